@@ -1,0 +1,264 @@
+#!/usr/bin/env node
+/**
+ * Builds the program into `dist/`: the command, the Electron shell with the loopback host, and the window.
+ *
+ *     node build.config.mjs                everything
+ *     node build.config.mjs --if-stale     everything, only when a source has changed since the last build
+ *     node build.config.mjs bench          the benchmarks, into `dist/bench`
+ *
+ * Each part is built aside and moved into place whole, so that a running program never meets half a build.
+ */
+import { createHash } from 'node:crypto';
+import { chmod, copyFile, mkdir, readFile, readdir, rename, rm, stat, writeFile } from 'node:fs/promises';
+import { existsSync } from 'node:fs';
+import { basename, dirname, join, relative, sep } from 'node:path';
+import { fileURLToPath } from 'node:url';
+
+const root = dirname(fileURLToPath(import.meta.url));
+process.chdir(root);
+const dist = join(root, 'dist');
+const stampFile = join(dist, '.stamp');
+const lockFolder = join(root, 'node_modules', '.deasil-build-lock');
+
+/** Sources whose change makes the build stale. */
+const SOURCES = ['core', 'electron', 'renderer', 'assets', 'build.config.mjs', 'vite.config.ts', 'package-lock.json', 'package.json'];
+
+/** Packages that hold a native binary and so stay outside the bundles. */
+const NATIVE = ['@resvg/resvg-js'];
+
+/** Files of packages that the command reads at run time; they are laid beside its bundle. */
+const COMMAND_ASSETS = ['node_modules/@rdkit/rdkit/dist/RDKit_minimal.wasm', 'node_modules/openchemlib/dist/resources.json'];
+
+/** A lock older than this was left behind by a build that was killed, ms. */
+const STALE_LOCK = 120_000;
+
+/** Every file under a path of the project, relative to it. */
+async function filesUnder(path) {
+  const full = join(root, path);
+  const info = await stat(full).catch(() => null);
+  if (!info) return [];
+  if (!info.isDirectory()) return [path];
+  const entries = await readdir(full, { withFileTypes: true, recursive: true });
+  return entries.filter(entry => entry.isFile()).map(entry => join(relative(root, entry.parentPath), entry.name));
+}
+
+/** Names, sizes and times of all sources in one hash. */
+async function fingerprint() {
+  const hash = createHash('sha256');
+  for (const source of SOURCES) {
+    for (const file of (await filesUnder(source)).sort()) {
+      const info = await stat(join(root, file)).catch(() => null);
+      if (info) hash.update(`${file}\0${info.size}\0${info.mtimeMs}\n`);
+    }
+  }
+  return hash.digest('hex');
+}
+
+/** Names every package from which a bundle took a module. */
+function packageCollector(packages, part) {
+  return {
+    name: 'deasil-licences',
+    generateBundle(_options, bundle) {
+      for (const chunk of Object.values(bundle)) {
+        if (chunk.type !== 'chunk') continue;
+        for (const id of chunk.moduleIds) {
+          const clean = id.replace(/^\0/, '').split('?')[0];
+          const at = clean.lastIndexOf(`node_modules${sep}`);
+          if (at < 0) continue;
+          const names = clean.slice(at + `node_modules${sep}`.length).split(sep);
+          const name = names[0].startsWith('@') ? `${names[0]}/${names[1]}` : names[0];
+          const folder = `${clean.slice(0, at)}node_modules${sep}${name.split('/').join(sep)}`;
+          addPackage(packages, folder, part);
+        }
+      }
+    },
+  };
+}
+
+function addPackage(packages, folder, part) {
+  const parts = packages.get(folder) ?? new Set();
+  parts.add(part);
+  packages.set(folder, parts);
+}
+
+/** Bundles TypeScript for Node. */
+async function bundle(options) {
+  const { build } = await import('rolldown');
+  const { input, dir, format, part, packages, external = [], extension = 'js' } = options;
+  await build({
+    input,
+    platform: 'node',
+    cwd: root,
+    external: [...NATIVE, 'electron', ...external],
+    logLevel: 'warn',
+    checks: { pluginTimings: false },
+    plugins: [packageCollector(packages, part)],
+    transform: { define: { 'process.env.NODE_ENV': '"production"' } },
+    output: {
+      dir,
+      format,
+      entryFileNames: `[name].${extension}`,
+      chunkFileNames: `[name]-[hash].${extension}`,
+      codeSplitting: format === 'esm',
+    },
+  });
+}
+
+async function buildCommand(staging, packages) {
+  if (!present('core/commands/main.ts')) return;
+  const dir = join(staging, 'command');
+  await bundle({ input: { deasil: 'core/commands/main.ts' }, dir, format: 'esm', part: 'command', packages });
+  const entry = join(dir, 'deasil.js');
+  const text = await readFile(entry, 'utf8');
+  if (!text.startsWith('#!')) await writeFile(entry, `#!/usr/bin/env node\n${text}`);
+  await chmod(entry, 0o755);
+  for (const asset of COMMAND_ASSETS) await copyFile(join(root, asset), join(dir, basename(asset)));
+}
+
+async function buildShell(staging, packages) {
+  const entries = { main: 'electron/main.ts', start: 'electron/start.ts', loopback: 'electron/loopback/serve.ts' };
+  const input = Object.fromEntries(Object.entries(entries).filter(([, source]) => present(source)));
+  if (Object.keys(input).length === 0) return;
+  const dir = join(staging, 'electron');
+  await bundle({ input, dir, format: 'esm', part: 'shell', packages });
+  if (!present('electron/preload.ts')) return;
+  await bundle({
+    input: { preload: 'electron/preload.ts' },
+    dir,
+    format: 'cjs',
+    extension: 'cjs',
+    part: 'shell',
+    packages,
+  });
+}
+
+async function buildWindow(staging, packages) {
+  if (!present('vite.config.ts')) return;
+  const { build, loadConfigFromFile } = await import('vite');
+  const environment = { command: 'build', mode: 'production' };
+  const loaded = await loadConfigFromFile(environment, join(root, 'vite.config.ts'), root, 'error');
+  const config = loaded?.config ?? {};
+  const workerPlugins = config.worker?.plugins;
+  const collector = packageCollector(packages, 'window');
+  await build({
+    ...config,
+    configFile: false,
+    mode: 'production',
+    logLevel: 'warn',
+    plugins: [...(config.plugins ?? []), collector],
+    worker: { ...config.worker, plugins: () => [...(workerPlugins?.() ?? []), packageCollector(packages, 'window')] },
+    build: { ...config.build, outDir: join(staging, 'window'), emptyOutDir: true },
+  });
+}
+
+const missing = [];
+
+/** Whether a part's source is there; notes what is not. */
+function present(source) {
+  if (existsSync(join(root, source))) return true;
+  missing.push(source);
+  return false;
+}
+
+/** Licences of all that the bundles contain, with their texts. */
+async function licences(packages) {
+  const list = new Map();
+  for (const [folder, parts] of packages) {
+    const manifest = JSON.parse(await readFile(join(folder, 'package.json'), 'utf8'));
+    const files = (await readdir(folder)).filter(name => /^(licen[cs]e|copying|notice)/i.test(name)).sort();
+    const texts = [];
+    for (const file of files) {
+      if ((await stat(join(folder, file))).isFile()) texts.push(await readFile(join(folder, file), 'utf8'));
+    }
+    const licence = typeof manifest.license === 'string' ? manifest.license : (manifest.license?.type ?? null);
+    const key = `${manifest.name}@${manifest.version}`;
+    const earlier = list.get(key);
+    list.set(key, {
+      name: manifest.name,
+      version: manifest.version,
+      licence: licence ?? 'see the text',
+      homepage: manifest.homepage ?? null,
+      parts: [...new Set([...(earlier?.parts ?? []), ...parts])].sort(),
+      text: texts.join('\n\n').trim(),
+    });
+  }
+  return [...list.values()].sort((a, b) => (a.name < b.name ? -1 : a.name > b.name ? 1 : 0));
+}
+
+/** Moves a built part into place. */
+async function install(staging, part) {
+  const fresh = join(staging, part);
+  if (!existsSync(fresh)) return;
+  const target = join(dist, part);
+  const old = join(staging, `${part}.old`);
+  if (existsSync(target)) await rename(target, old);
+  await rename(fresh, target);
+}
+
+/** Runs one build at a time in this checkout. */
+async function locked(task) {
+  for (;;) {
+    try {
+      await mkdir(lockFolder, { recursive: false });
+      break;
+    } catch (error) {
+      if (error.code !== 'EEXIST') throw error;
+      const info = await stat(lockFolder).catch(() => null);
+      if (info && Date.now() - info.mtimeMs > STALE_LOCK) await rm(lockFolder, { recursive: true, force: true });
+      await new Promise(resolve => setTimeout(resolve, 100));
+    }
+  }
+  try {
+    return await task();
+  } finally {
+    await rm(lockFolder, { recursive: true, force: true });
+  }
+}
+
+async function buildAll(onlyStale) {
+  const mark = await fingerprint();
+  if (onlyStale && (await readFile(stampFile, 'utf8').catch(() => '')) === mark) return;
+  const started = Date.now();
+  await mkdir(dist, { recursive: true });
+  const staging = join(dist, `.staging-${process.pid}`);
+  const packages = new Map();
+  try {
+    await Promise.all([
+      buildCommand(staging, packages),
+      buildShell(staging, packages),
+      buildWindow(staging, packages),
+    ]);
+    for (const name of NATIVE) addPackage(packages, join(root, 'node_modules', ...name.split('/')), 'command');
+    addPackage(packages, join(root, 'node_modules', 'electron'), 'shell');
+    const list = JSON.stringify(await licences(packages), null, 1);
+    if (existsSync(join(staging, 'window'))) await writeFile(join(staging, 'window', 'licences.json'), list);
+    for (const part of ['command', 'electron', 'window']) await install(staging, part);
+    await writeFile(join(dist, 'licences.json'), list);
+  } finally {
+    await rm(staging, { recursive: true, force: true });
+  }
+  await writeFile(stampFile, mark);
+  for (const source of missing) console.error(`build: ${source} is not there; its part was left out`);
+  console.error(`build: ${((Date.now() - started) / 1000).toFixed(1)} s`);
+}
+
+async function buildBench() {
+  const dir = join(dist, 'bench');
+  await rm(dir, { recursive: true, force: true });
+  await bundle({
+    input: { main: 'test/bench/main.ts' },
+    dir,
+    format: 'esm',
+    part: 'bench',
+    packages: new Map(),
+    external: [/^[^./]/],
+  });
+}
+
+const [what] = process.argv.slice(2);
+if (what === 'bench') await buildBench();
+else if (what === undefined || what === '--if-stale') await locked(() => buildAll(what !== undefined));
+else {
+  console.error(`build: unknown argument ${what}; use none, --if-stale or bench`);
+  process.exitCode = 2;
+}
