@@ -36,6 +36,8 @@ export interface Host {
   open(): Promise<readonly HostFile[]>;
   /** Hands over dropped, pasted or picked content that has no path. */
   offer(name: string, bytes: Uint8Array): Promise<HostFile>;
+  /** Hands over a dropped or picked file: by its path where the shell knows it (then it can be watched, its session lies beside it), else by its content. */
+  offerFile(file: File): Promise<HostFile>;
   /** Reads part of a file: at most `length` bytes from `offset`. */
   read(id: string, offset: number, length: number): Promise<Uint8Array>;
   /** Saves with a dialog (Electron) or as a download (loopback); the final name, or null when cancelled. Writes are atomic. */

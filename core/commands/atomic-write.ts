@@ -65,6 +65,7 @@ export async function writeAtomically(
     const handle = await open(name, 'wx', mode);
     temporary = name;
     try {
+      if (existing) await handle.chmod(mode);
       await writeContent(handle, content);
       await handle.sync();
     } finally {
