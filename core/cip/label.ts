@@ -1,0 +1,280 @@
+/**
+ * Descriptors for the candidate units of a molecule: which of them are stereogenic, how their ligands rank, and the
+ * letter that follows.
+ */
+import { LONE_PAIR, type Molecule } from '../chemistry/molecule.ts';
+import type { Descriptor, LabelledUnit, RankedLigand, Settings } from '../docket.ts';
+import type { StereoUnit, UnitEnd } from '../perception/unit.ts';
+import { type AuxiliaryDescriptor, centreLetter, labelAuxiliary, pairLetter } from './auxiliary.ts';
+import { Branches } from './branches.ts';
+import { Digraph, DigraphLimitError } from './digraph.ts';
+import { Letter, descriptorOf } from './letter.ts';
+import {
+  NO_NODE,
+  type Ranking,
+  copyOf,
+  isComplete,
+  permutationParity,
+  rankByConfiguration,
+  rankByConstitution,
+  rankByReference,
+} from './ranking.ts';
+import { rankingGraph } from './ranking-graph.ts';
+import { type UnitTable, unitTable } from './unit-table.ts';
+
+/** How many ways undecided units are tried before a ranking that may rest on them is given up. */
+const MOST_TRIALS = 16;
+
+/** What the ranking of one unit came to. */
+interface Outcome {
+  readonly rankings: readonly Ranking[];
+  readonly letter: Letter;
+  /** Whether Rules 3 to 6 had a say, so that the configuration of other units matters. */
+  readonly configurational: boolean;
+  readonly nodes: number;
+}
+
+/** Ranks units of one molecule; keeps the digraph arrays from one unit to the next. */
+export class Labeller {
+  readonly digraph: Digraph;
+  readonly table: UnitTable;
+  readonly view: Branches;
+  private readonly scratch: Branches;
+  private readonly undecided: readonly number[];
+  /** The auxiliary descriptors of the ranking done last. */
+  auxiliary: readonly AuxiliaryDescriptor[] = [];
+
+  constructor(molecule: Molecule, units: readonly StereoUnit[], settings: Settings) {
+    this.digraph = new Digraph(molecule, rankingGraph(molecule), settings.digraphLimit);
+    this.view = new Branches(this.digraph);
+    this.scratch = new Branches(this.digraph);
+    this.table = unitTable(molecule, units);
+    this.undecided = units.flatMap((unit, i) => (unit.sense === 0 && unit.labile === null ? [i] : []));
+  }
+
+  /** Labels one unit; null when it is not stereogenic. */
+  label(index: number): LabelledUnit | null {
+    const unit = this.table.units[index]!;
+    if (unit.kind === 'helix' || unit.kind === 'plane') return labelByTurn(unit);
+    try {
+      return this.labelByRank(index, unit);
+    } catch (error) {
+      if (!(error instanceof DigraphLimitError)) throw error;
+      return withoutLetter(unit, [
+        `no descriptor: ${error.message} (setting digraphLimit); the ranking was not finished`,
+      ]);
+    }
+  }
+
+  /** Ranks one end's ligands as they stand now and leaves the digraph and its view in place, for the ladder. */
+  rankEnd(unitIndex: number, end: UnitEnd): { ranking: Ranking; ligands: number[] } {
+    const ligands = this.start(end);
+    const ranking = rankByConstitution(this.view, 0, ligands);
+    this.auxiliary = [];
+    if (!isComplete(ranking)) this.finish(unitIndex, ranking, ligands);
+    return { ranking, ligands };
+  }
+
+  private labelByRank(index: number, unit: StereoUnit): LabelledUnit | null {
+    const own = this.table.sense[index]!;
+    const outcome = this.outcome(index, unit);
+    if (outcome !== null && !outcome.configurational) return labelled(unit, outcome, []);
+    const others = this.undecided.filter(i => i !== index);
+    if (others.length === 0) return outcome === null ? null : labelled(unit, outcome, []);
+    // The ranking may rest on units that nothing decides: the letter stands only if it is the same whatever they are.
+    const trials = Math.min(MOST_TRIALS, 2 ** others.length);
+    const outcomes: (Outcome | null)[] = [];
+    const before = this.table.sense.slice();
+    for (let trial = 0; trial < trials; trial++) {
+      others.forEach((other, bit) => {
+        const scrambled = trials < MOST_TRIALS ? trial >> bit : (trial * 0x9e37 + bit * 0x79b9) >> (bit % 13);
+        this.table.sense[other] = scrambled & 1 ? 1 : -1;
+      });
+      outcomes.push(this.outcome(index, unit));
+    }
+    this.table.sense.set(before);
+    this.table.sense[index] = own;
+    const stereogenic = outcomes.find(o => o !== null);
+    if (stereogenic === undefined) return null;
+    if (outcomes.every(o => o !== null && o.letter === stereogenic!.letter)) return labelled(unit, stereogenic!, []);
+    return {
+      ...withoutLetter(unit, [
+        'no descriptor: the ranking depends on another unit whose configuration is not decided',
+      ]),
+    };
+  }
+
+  /** Ranks and labels a unit with the senses that the table has now; null when ligands remain tied. */
+  private outcome(index: number, unit: StereoUnit): Outcome | null {
+    const sense = unit.sense;
+    const rankings: Ranking[] = [];
+    let nodes = 0;
+    let configurational = false;
+    const tiedEnds: UnitEnd[] = [];
+    for (const end of unit.ends) {
+      const { ranking } = this.rankEnd(index, end);
+      nodes = Math.max(nodes, this.digraph.count);
+      rankings.push(ranking);
+      if (ranking.rules.some(rule => rule !== null && rule >= '3')) configurational = true;
+      if (!isComplete(ranking)) tiedEnds.push(end);
+    }
+    if (tiedEnds.length > 0) {
+      const resolved = this.byReference(index, unit, rankings);
+      return resolved === null ? null : { ...resolved, nodes, configurational: true };
+    }
+    return { rankings, letter: letterOf(unit, sense, rankings), configurational, nodes };
+  }
+
+  /**
+   * Rule 6: takes each of the tied ligands of the highest rank as the reference in turn. A descriptor results only
+   * when every choice separates all ligands and gives the same letter.
+   */
+  private byReference(
+    index: number,
+    unit: StereoUnit,
+    partial: readonly Ranking[],
+  ): { rankings: readonly Ranking[]; letter: Letter } | null {
+    const endIndex = partial.findIndex(ranking => !isComplete(ranking));
+    const ranking = partial[endIndex]!;
+    const end = unit.ends[endIndex]!;
+    const first = ranking.tied.indexOf(true) - 1;
+    let last = first + 1;
+    while (last + 1 < ranking.order.length && ranking.tied[last + 1]) last++;
+    // A single pair that nothing tells apart can be exchanged without change: no stereogenic unit.
+    const ties = partial.reduce((sum, r) => sum + r.tied.filter(Boolean).length, 0);
+    if (ties < 2) return null;
+    let result: { rankings: readonly Ranking[]; letter: Letter } | null = null;
+    for (let place = first; place <= last; place++) {
+      const reference = end.ligands[ranking.order[place]!]!;
+      if (reference < 0) return null;
+      const rankings = unit.ends.map(e => {
+        const { ranking: own, ligands } = this.rankEnd(index, e);
+        const extended = copyOf(own);
+        if (!isComplete(extended)) rankByReference(this.view, extended, ligands, reference);
+        return extended;
+      });
+      if (!rankings.every(isComplete)) return null;
+      const letter = letterOf(unit, unit.sense === 0 ? 1 : unit.sense, rankings);
+      if (result !== null && result.letter !== letter) return null;
+      result ??= { rankings, letter };
+    }
+    if (result === null) return null;
+    return unit.sense === 0 ? { ...result, letter: Letter.none } : result;
+  }
+
+  private start(end: UnitEnd): number[] {
+    this.digraph.reset(end.atom);
+    this.digraph.expand(0);
+    return end.ligands.map(ligand => (ligand === LONE_PAIR ? NO_NODE : this.ligandOfRoot(ligand)));
+  }
+
+  private ligandOfRoot(ligand: number): number {
+    const node = this.digraph.ligandNode(0, ligand);
+    if (node < 0) throw new RangeError(`ligand ${ligand + 1} is not a neighbour of the atom it is said to be on`);
+    return node;
+  }
+
+  private finish(unitIndex: number, ranking: Ranking, ligands: readonly number[]): void {
+    const tiedLigands = ranking.order.flatMap((ligand, k) =>
+      ranking.tied[k] || ranking.tied[k + 1] === true ? [ligands[ligand]!] : [],
+    );
+    this.auxiliary = labelAuxiliary(this.view, this.scratch, tiedLigands, this.table, unitIndex);
+    if (this.auxiliary.length > 0) rankByConfiguration(this.view, ranking, ligands);
+  }
+}
+
+function letterOf(unit: StereoUnit, sense: number, rankings: readonly Ranking[]): Letter {
+  if (sense === 0) return Letter.none;
+  return rankings.length === 1
+    ? centreLetter(sense, rankings)
+    : pairLetter(unit, sense, rankings[0]!, rankings[1]!);
+}
+
+function labelByTurn(unit: StereoUnit): LabelledUnit {
+  const descriptor: Descriptor | null = unit.sense === 0 ? null : unit.sense > 0 ? 'P' : 'M';
+  return {
+    unit,
+    descriptor,
+    ranking: [],
+    signedVolume: null,
+    torsion: unit.torsion,
+    torsionAtoms: null,
+    warnings: unit.warnings,
+  };
+}
+
+function withoutLetter(unit: StereoUnit, warnings: readonly string[]): LabelledUnit {
+  return {
+    unit,
+    descriptor: null,
+    ranking: [],
+    signedVolume: unit.signedVolume,
+    torsion: unit.torsion,
+    torsionAtoms: null,
+    warnings: [...unit.warnings, ...warnings],
+  };
+}
+
+function labelled(unit: StereoUnit, outcome: Outcome, warnings: readonly string[]): LabelledUnit {
+  const ranking: RankedLigand[] = [];
+  outcome.rankings.forEach((r, e) => {
+    const end = unit.ends.length === 2 ? ((e + 1) as 1 | 2) : null;
+    let rank = 0;
+    r.order.forEach((ligand, k) => {
+      if (!r.tied[k]) rank = k + 1;
+      ranking.push({
+        ligand: unit.ends[e]!.ligands[ligand]!,
+        rank,
+        decidedBy: r.rules[k]!,
+        sphere: r.spheres[k]!,
+        end,
+      });
+    });
+  });
+  return {
+    unit,
+    descriptor: descriptorOf(outcome.letter),
+    ranking,
+    signedVolume: rankedVolume(unit, outcome.rankings),
+    ...rankedTorsion(unit, outcome.rankings),
+    warnings: [...unit.warnings, ...warnings],
+  };
+}
+
+function rankedVolume(unit: StereoUnit, rankings: readonly Ranking[]): number | null {
+  if (unit.signedVolume === null || rankings.length !== 1) return unit.signedVolume;
+  return unit.signedVolume * permutationParity(rankings[0]!.order) + 0;
+}
+
+/** The torsion between the top-ranked ligands; taken from the other ligand of an end, half a turn away, where the top one is not an atom. */
+function rankedTorsion(
+  unit: StereoUnit,
+  rankings: readonly Ranking[],
+): { torsion: number | null; torsionAtoms: readonly [number, number, number, number] | null } {
+  if (rankings.length !== 2 || unit.torsion === null) return { torsion: unit.torsion, torsionAtoms: null };
+  const [first, second] = unit.ends as readonly [UnitEnd, UnitEnd];
+  const top = [first.ligands[rankings[0]!.order[0]!]!, second.ligands[rankings[1]!.order[0]!]!] as const;
+  let torsion = unit.torsion;
+  for (const r of rankings) if (r.order[0] !== 0) torsion += 180;
+  torsion = ((((torsion + 180) % 360) + 360) % 360) - 180;
+  if (torsion === -180) torsion = 180;
+  return {
+    torsion,
+    torsionAtoms: top[0] >= 0 && top[1] >= 0 ? [top[0], first.atom, second.atom, top[1]] : null,
+  };
+}
+
+/** Labels the candidates of a molecule and leaves out those that are not stereogenic. */
+export function labelUnits(
+  molecule: Molecule,
+  units: readonly StereoUnit[],
+  settings: Settings,
+): { readonly units: LabelledUnit[]; readonly peakNodes: number } {
+  const labeller = new Labeller(molecule, units, settings);
+  const result: LabelledUnit[] = [];
+  units.forEach((_, index) => {
+    const one = labeller.label(index);
+    if (one !== null) result.push(one);
+  });
+  return { units: result, peakNodes: labeller.digraph.peak };
+}
