@@ -1,6 +1,6 @@
 /** The ladder: the account of how the ligands of a unit were ranked, sphere by sphere, to the first difference. */
 import { elementSymbol } from '../chemistry/elements.ts';
-import type { Molecule } from '../chemistry/molecule.ts';
+import { LONE_PAIR, type Molecule } from '../chemistry/molecule.ts';
 import type { Ladder, LadderNode, LadderSphere, LadderStep, RuleName, Settings } from '../docket.ts';
 import type { StereoUnit } from '../perception/unit.ts';
 import type { Branches } from './branches.ts';
@@ -150,7 +150,10 @@ function textWriter(view: Branches, rule: RuleName): Writer {
 
 /** The sets of one sphere of a branch: the children of each node of the sphere before, in order. */
 function setsOf(view: Branches, ligand: number, sphere: number, write: Writer): LadderNode[][] {
-  if (ligand === NO_NODE) return [[{ atom: -2, nature: 'implicit', text: 'lone pair' }]].slice(0, sphere === 1 ? 1 : 0);
+  if (ligand === NO_NODE) {
+    const pair: LadderNode = { atom: LONE_PAIR, nature: 'implicit', text: 'lone pair' };
+    return sphere === 1 ? [[pair]] : [];
+  }
   if (sphere === 1) {
     const node = ladderNode(view, ligand, 1, ligand, write);
     return node === null ? [] : [[node]];

@@ -207,14 +207,14 @@ function compareLists(a: readonly number[], b: readonly number[]): number {
 }
 
 /**
- * The pairs of a ligand against its reference; of two references, against the one that puts like first sooner. Leaves
- * the branch in the order that goes with it; as it was where two references give the same.
+ * The pairs of a ligand against its reference; of two references, against the one that puts like first sooner. The
+ * order in which the branch is read for this belongs to the reference and is given up afterwards: the later rules
+ * find the branch as Rule 4a left it.
  */
 function descriptorPairs(branches: Branches, ligand: number): Pairs {
-  const references = referencesIn(branches, ligand);
   const before = branches.save();
-  const results = references.map(reference => {
-    branches.restore(before);
+  let best: Pairs = [];
+  for (const reference of referencesIn(branches, ligand)) {
     const rule = against(reference);
     const spheres: number[][] = [];
     for (let sphere = 1; sphere === 1 || branches.arrange(ligand, branches.root, 1, sphere, rule); sphere++) {
@@ -222,17 +222,18 @@ function descriptorPairs(branches: Branches, ligand: number): Pairs {
       collect(branches, ligand, 1, sphere, rule, list);
       spheres.push(list);
     }
-    return { spheres, after: branches.save() };
-  });
-  const [first, second] = results;
-  if (first === undefined) return [];
-  if (second === undefined) return first.spheres;
-  let order = 0;
-  for (let s = 0; s < first.spheres.length && order === 0; s++) {
-    order = compareLists(first.spheres[s]!, second.spheres[s] ?? []);
+    branches.restore(before);
+    if (best.length === 0 || precedes(spheres, best)) best = spheres;
   }
-  branches.restore(order === 0 ? before : order > 0 ? first.after : second.after);
-  return order >= 0 ? first.spheres : second.spheres;
+  return best;
+}
+
+function precedes(first: Pairs, second: Pairs): boolean {
+  for (let sphere = 0; sphere < first.length; sphere++) {
+    const order = compareLists(first[sphere]!, second[sphere] ?? []);
+    if (order !== 0) return order > 0;
+  }
+  return false;
 }
 
 function collect(
