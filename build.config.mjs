@@ -32,6 +32,8 @@ const COMMAND_ASSETS = ['node_modules/@rdkit/rdkit/dist/RDKit_minimal.wasm', 'no
 /** A lock older than this was left behind by a build that was killed, ms. */
 const STALE_LOCK = 120_000;
 
+const byText = (a, b) => (a < b ? -1 : a > b ? 1 : 0);
+
 /** Every file under a path of the project, relative to it. */
 async function filesUnder(path) {
   const full = join(root, path);
@@ -46,7 +48,7 @@ async function filesUnder(path) {
 async function fingerprint() {
   const hash = createHash('sha256');
   for (const source of SOURCES) {
-    for (const file of (await filesUnder(source)).sort()) {
+    for (const file of (await filesUnder(source)).sort(byText)) {
       const info = await stat(join(root, file)).catch(() => null);
       if (info) hash.update(`${file}\0${info.size}\0${info.mtimeMs}\n`);
     }
@@ -165,7 +167,7 @@ async function licences(packages) {
   const list = new Map();
   for (const [folder, parts] of packages) {
     const manifest = JSON.parse(await readFile(join(folder, 'package.json'), 'utf8'));
-    const files = (await readdir(folder)).filter(name => /^(licen[cs]e|copying|notice)/i.test(name)).sort();
+    const files = (await readdir(folder)).filter(name => /^(licen[cs]e|copying|notice)/i.test(name)).sort(byText);
     const texts = [];
     for (const file of files) {
       if ((await stat(join(folder, file))).isFile()) texts.push(await readFile(join(folder, file), 'utf8'));
@@ -178,11 +180,11 @@ async function licences(packages) {
       version: manifest.version,
       licence: licence ?? 'see the text',
       homepage: manifest.homepage ?? null,
-      parts: [...new Set([...(earlier?.parts ?? []), ...parts])].sort(),
+      parts: [...new Set([...(earlier?.parts ?? []), ...parts])].sort(byText),
       text: texts.join('\n\n').trim(),
     });
   }
-  return [...list.values()].sort((a, b) => (a.name < b.name ? -1 : a.name > b.name ? 1 : 0));
+  return [...list.values()].sort((a, b) => byText(a.name, b.name));
 }
 
 /** Moves a built part into place. */

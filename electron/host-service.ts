@@ -75,10 +75,17 @@ export class HostService {
   }
 
   /** Opens files named while running (a second start, a file association) and tells the window. */
-  async openPaths(paths: readonly string[]): Promise<readonly HostFile[]> {
-    const files = await this.#enter(paths, true);
+  async openPaths(paths: readonly string[], remember = true): Promise<readonly HostFile[]> {
+    const files = await this.#enter(paths, remember);
     if (files.length > 0) this.#shell.send({ type: 'opened', files });
     return files;
+  }
+
+  /** Enters one file that the person dropped on the window. @throws HostError `not-readable`. */
+  async enterPath(path: string): Promise<HostFile> {
+    const file = await this.files.add(path);
+    await this.#remember([this.files.entry(file.id).path]);
+    return file;
   }
 
   async #enter(paths: readonly string[], remember: boolean): Promise<HostFile[]> {
@@ -93,14 +100,16 @@ export class HostService {
         this.#shell.log(error instanceof Error ? error.message : String(error));
       }
     }
-    if (remember && entered.length > 0) {
-      await this.#recent.add(entered).catch((error: unknown) => {
-        this.#shell.log(
-          `the list of recent files was not kept: ${error instanceof Error ? error.message : String(error)}`,
-        );
-      });
-    }
+    if (remember && entered.length > 0) await this.#remember(entered);
     return files;
+  }
+
+  async #remember(paths: readonly string[]): Promise<void> {
+    await this.#recent.add(paths).catch((error: unknown) => {
+      this.#shell.log(
+        `the list of recent files was not kept: ${error instanceof Error ? error.message : String(error)}`,
+      );
+    });
   }
 
   /**
@@ -141,12 +150,12 @@ export class HostService {
       case 'recent':
         check(method, message);
         return await this.#recentFiles();
-      case 'watch': {
-        const { id, on } = check(method, message);
-        this.#watcher.set(this.files.entry(id), on);
-        return null;
-      }
+      case 'watch':
+        break;
     }
+    const { id, on } = check(method, message);
+    this.#watcher.set(this.files.entry(id), on);
+    return null;
   }
 
   async #open(): Promise<HostFile[]> {

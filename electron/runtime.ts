@@ -3,6 +3,12 @@ import { accessSync, constants, readFileSync } from 'node:fs';
 import { createRequire } from 'node:module';
 import { dirname, join } from 'node:path';
 
+/** The executable in an unpacked runtime, by platform. */
+const OVERRIDE_NAMES: Partial<Record<NodeJS.Platform, string>> = {
+  win32: 'electron.exe',
+  darwin: 'Electron.app/Contents/MacOS/Electron',
+};
+
 /** Path of the runtime's executable, or null. @param env `ELECTRON_OVERRIDE_DIST_PATH` is honoured. */
 export function electronRuntime(
   env: NodeJS.ProcessEnv = process.env,
@@ -11,7 +17,8 @@ export function electronRuntime(
   try {
     const folder = dirname(createRequire(from).resolve('electron/package.json'));
     const override = env['ELECTRON_OVERRIDE_DIST_PATH'];
-    const name = read(join(folder, 'path.txt')) ?? (override ? 'electron' : null);
+    const name =
+      read(join(folder, 'path.txt')) ?? (override ? (OVERRIDE_NAMES[process.platform] ?? 'electron') : null);
     if (name === null) return null;
     const path = join(override || join(folder, 'dist'), name);
     accessSync(path, constants.X_OK);

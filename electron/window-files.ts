@@ -1,6 +1,6 @@
 /** The built window as a closed list of files: what is not in the list cannot be asked for, whatever the path says. */
 import { readdir, readFile } from 'node:fs/promises';
-import { extname, join, relative, sep } from 'node:path';
+import { extname, join } from 'node:path';
 import { headersFor } from './policy.ts';
 
 const TYPES: Readonly<Record<string, string>> = {
@@ -22,6 +22,15 @@ export interface WindowFile {
   readonly headers: Readonly<Record<string, string>>;
 }
 
+/** Enters the files under a folder by their address path. */
+async function walk(folder: string, prefix: string, paths: Map<string, string>): Promise<void> {
+  for (const entry of await readdir(join(folder, prefix), { withFileTypes: true })) {
+    const path = prefix === '' ? entry.name : `${prefix}/${entry.name}`;
+    if (entry.isDirectory()) await walk(folder, path, paths);
+    else if (entry.isFile()) paths.set(`/${path}`, path);
+  }
+}
+
 export class WindowFiles {
   readonly #folder: string;
   readonly #paths: ReadonlyMap<string, string>;
@@ -33,18 +42,13 @@ export class WindowFiles {
 
   /** Lists the files of the built window. @throws Error when the window was not built. */
   static async list(folder: string): Promise<WindowFiles> {
-    const entries = await readdir(folder, { withFileTypes: true, recursive: true }).catch(
-      (error: unknown) => {
-        throw new Error(`the window is not built: ${folder} is not there; run "npm run build"`, {
-          cause: error,
-        });
-      },
-    );
     const paths = new Map<string, string>();
-    for (const entry of entries) {
-      if (!entry.isFile()) continue;
-      const file = relative(folder, join(entry.parentPath, entry.name));
-      paths.set(`/${file.split(sep).join('/')}`, file);
+    try {
+      await walk(folder, '', paths);
+    } catch (error) {
+      throw new Error(`the window is not built: ${folder} cannot be read; run "npm run build"`, {
+        cause: error,
+      });
     }
     return new WindowFiles(folder, paths);
   }

@@ -23,15 +23,8 @@ const count = z.number().int().nonnegative().max(Number.MAX_SAFE_INTEGER);
 /** A plain file name: no folder in it, no control character. */
 export const fileName = z
   .string()
-  .min(1)
   .max(NAME_LIMIT)
-  .refine(
-    name =>
-      ![...name].some(character => '/\\'.includes(character) || character < ' ' || character === '\u007f'),
-    {
-      message: 'a file name without a folder or control characters is expected',
-    },
-  )
+  .regex(/^[^/\\\p{Cc}]+$/u, 'a file name without a folder or control characters is expected')
   .refine(name => name !== '.' && name !== '..', { message: 'a file name is expected' });
 
 export const hostFile = z.strictObject({ id: fileId, name: z.string(), size: count });
