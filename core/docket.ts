@@ -106,6 +106,8 @@ export const DEFAULT_SETTINGS: Settings = { flatFirmness: 0.2, flatSigmas: 3, di
 /** The stereogenic units of one model. */
 export interface Docket {
   readonly units: readonly LabelledUnit[];
+  /** All that perception took for a possible unit, the stereogenic ones among them; the ladder needs them. */
+  readonly candidates: readonly StereoUnit[];
   readonly molecules: readonly MoleculeStatement[];
   readonly warnings: readonly string[];
 }
