@@ -1,0 +1,313 @@
+/** The relation of a found molecule to the intended one, tested over all mappings that the symmetry of the molecule allows. */
+import type { Relation } from '../docket.ts';
+import type { Symmetry } from './symmetry.ts';
+import type { IntendedUnit, UnitTable } from './units.ts';
+import { Arrangement, arrangementOf, nodesOf } from './verdict.ts';
+
+/** Most mappings looked at in one search; symmetric molecules of ordinary size need far fewer. */
+export const MAPPING_LIMIT = 50_000;
+/** Most alternative choices of inverted units that are named. */
+const CHOICES_LIMIT = 64;
+
+/** Most equivalent mappings counted once nothing is left to improve. */
+export const EQUIVALENT_LIMIT = 1000;
+
+/** Nodes whose exchange for another costs when bond orders are wanting: 1 where the model shows otherwise. */
+export interface BondingEvidence {
+  readonly nodes: readonly number[];
+  /** Cost of mapping an intended node to a model node. */
+  cost(intended: number, model: number): number;
+}
+
+export interface MappingSearch {
+  /** Intended node to model node under the mapping that leaves the fewest inverted units. */
+  readonly image: Int32Array;
+  /** Arrangement of each intended unit under it. */
+  readonly arrangements: readonly Arrangement[];
+  /** Inverted units under it, groups judged whole. */
+  readonly inverted: number;
+  /** Units flat or missing under it. */
+  readonly undecided: number;
+  /** Mappings that differ where it matters and leave as few inverted. */
+  readonly equivalent: number;
+  /** The different sets of inverted units (indices into the intended units) such mappings leave. */
+  readonly choices: readonly (readonly number[])[];
+  /** Whether the mirrored intention is matched without exception. */
+  readonly mirrored: boolean;
+  /** Smallest bonding cost. */
+  readonly bondingCost: number;
+  /** Whether the search ran to its end, so that nothing better exists. */
+  readonly complete: boolean;
+}
+
+interface Tally {
+  bonding: number;
+  inverted: number;
+  undecided: number;
+}
+
+function compareTallies(a: Tally, b: Tally): number {
+  return a.bonding - b.bonding || a.inverted - b.inverted || a.undecided - b.undecided;
+}
+
+/** Walks all mappings level by level, giving up a branch as soon as it is worse than the bound. */
+class Walk {
+  readonly #units: readonly IntendedUnit[];
+  readonly #symmetry: Symmetry;
+  readonly #base: Int32Array;
+  readonly #model: UnitTable;
+  readonly #evidence: BondingEvidence | null;
+  readonly #unitsAt: number[][];
+  readonly #evidenceAt: number[][];
+  readonly #groups: number;
+  visited = 0;
+  exhausted = false;
+
+  constructor(
+    units: readonly IntendedUnit[],
+    symmetry: Symmetry,
+    base: Int32Array,
+    model: UnitTable,
+    evidence: BondingEvidence | null,
+  ) {
+    this.#units = units;
+    this.#symmetry = symmetry;
+    this.#base = base;
+    this.#model = model;
+    this.#evidence = evidence;
+    const depths = symmetry.levels.length + 1;
+    this.#unitsAt = Array.from({ length: depths }, () => []);
+    this.#evidenceAt = Array.from({ length: depths }, () => []);
+    units.forEach((unit, u) => {
+      let depth = 0;
+      for (const node of nodesOf(unit)) depth = Math.max(depth, symmetry.settledAfter[node]!);
+      this.#unitsAt[depth]!.push(u);
+    });
+    for (const node of evidence?.nodes ?? []) this.#evidenceAt[symmetry.settledAfter[node]!]!.push(node);
+    let groups = 0;
+    for (const unit of units) groups = Math.max(groups, unit.group + 1);
+    this.#groups = groups;
+  }
+
+  /** Calls `leaf` for every mapping whose tally is not above `bound()`. Stops when `leaf` returns true. */
+  run(
+    mirrored: boolean,
+    bound: () => Tally,
+    leaf: (tally: Tally, image: Int32Array, arrangements: Arrangement[]) => boolean,
+  ): void {
+    const n = this.#base.length;
+    const arrangements: Arrangement[] = this.#units.map(() => Arrangement.missing);
+    const agree = new Int32Array(this.#groups);
+    const oppose = new Int32Array(this.#groups);
+    this.visited = 0;
+    this.exhausted = false;
+    const descend = (depth: number, permutation: Int32Array | null, tally: Tally): boolean => {
+      if (++this.visited > MAPPING_LIMIT) {
+        this.exhausted = true;
+        return true;
+      }
+      let image = this.#base;
+      if (permutation) {
+        image = new Int32Array(n);
+        for (let v = 0; v < n; v++) image[v] = this.#base[permutation[v]!]!;
+      }
+      const now = { ...tally };
+      for (const node of this.#evidenceAt[depth]!) now.bonding += this.#evidence!.cost(node, image[node]!);
+      const undo: number[] = [];
+      for (const u of this.#unitsAt[depth]!) {
+        const unit = this.#units[u]!;
+        const arrangement = arrangementOf(unit, image, this.#model);
+        arrangements[u] = arrangement;
+        if (arrangement === Arrangement.flat || arrangement === Arrangement.missing) {
+          now.undecided++;
+          continue;
+        }
+        const wrong = (arrangement === Arrangement.inverted) !== (mirrored && unit.chiral);
+        if (unit.group === -1) {
+          if (wrong) now.inverted++;
+          continue;
+        }
+        // A group costs its smaller part: all as drawn or all inverted is no difference.
+        const g = unit.group;
+        const before = Math.min(agree[g]!, oppose[g]!);
+        if (wrong) oppose[g]!++;
+        else agree[g]!++;
+        undo.push(wrong ? -1 - g : g);
+        now.inverted += Math.min(agree[g]!, oppose[g]!) - before;
+      }
+      let stop = false;
+      if (compareTallies(now, bound()) <= 0) {
+        const level = this.#symmetry.levels[depth];
+        if (!level) stop = leaf(now, image, arrangements);
+        else {
+          for (const element of level.elements) {
+            let next = element;
+            if (permutation) {
+              next = new Int32Array(n);
+              for (let v = 0; v < n; v++) next[v] = permutation[element[v]!]!;
+            }
+            if (descend(depth + 1, next, now)) {
+              stop = true;
+              break;
+            }
+          }
+        }
+      }
+      for (const g of undo) {
+        if (g < 0) oppose[-1 - g]!--;
+        else agree[g]!--;
+      }
+      return stop;
+    };
+    descend(0, null, { bonding: 0, inverted: 0, undecided: 0 });
+  }
+}
+
+/** Chooses among given mappings, as `searchMappings` does among those of a symmetry; used where only part is mapped. */
+export function searchImages(
+  units: readonly IntendedUnit[],
+  images: readonly Int32Array[],
+  model: UnitTable,
+): MappingSearch {
+  let best: { tally: Tally; image: Int32Array; arrangements: Arrangement[] } | null = null;
+  let keys = new Set<string>();
+  let choices = new Map<string, number[]>();
+  const nodes = [...new Set(units.flatMap(nodesOf))];
+  for (const image of images) {
+    const arrangements = units.map(unit => arrangementOf(unit, image, model));
+    const wrong = invertedUnits(units, arrangements);
+    const inGroups = wrong.filter(u => units[u]!.group !== -1).length;
+    const tally: Tally = {
+      bonding: 0,
+      inverted: wrong.length - inGroups + mixedGroups(units, arrangements).size,
+      undecided: arrangements.filter(a => a === Arrangement.flat || a === Arrangement.missing).length,
+    };
+    const order = best ? compareTallies(tally, best.tally) : -1;
+    if (order > 0) continue;
+    if (order < 0) {
+      best = { tally, image, arrangements };
+      keys = new Set();
+      choices = new Map();
+    }
+    keys.add(nodes.map(node => image[node]).join(' '));
+    if (wrong.length > 0 && choices.size < CHOICES_LIMIT) choices.set(wrong.join(' '), wrong);
+  }
+  if (!best) throw new RangeError('no mapping to choose from');
+  return {
+    image: best.image,
+    arrangements: best.arrangements,
+    inverted: best.tally.inverted,
+    undecided: best.tally.undecided,
+    equivalent: keys.size,
+    choices: [...choices.values()],
+    mirrored: false,
+    bondingCost: 0,
+    complete: true,
+  };
+}
+
+/** The units that disagree under a mapping, in groups none when the group agrees as a whole. */
+export function invertedUnits(
+  units: readonly IntendedUnit[],
+  arrangements: readonly Arrangement[],
+): number[] {
+  const mixed = mixedGroups(units, arrangements);
+  const inverted: number[] = [];
+  units.forEach((unit, u) => {
+    if (unit.group === -1 ? arrangements[u] === Arrangement.inverted : mixed.has(unit.group))
+      inverted.push(u);
+  });
+  return inverted;
+}
+
+/** Groups whose members are neither all as drawn nor all inverted. */
+export function mixedGroups(
+  units: readonly IntendedUnit[],
+  arrangements: readonly Arrangement[],
+): Set<number> {
+  const seen = new Map<number, number>();
+  units.forEach((unit, u) => {
+    if (unit.group === -1) return;
+    const arrangement = arrangements[u];
+    if (arrangement === Arrangement.same) seen.set(unit.group, (seen.get(unit.group) ?? 0) | 1);
+    if (arrangement === Arrangement.inverted) seen.set(unit.group, (seen.get(unit.group) ?? 0) | 2);
+  });
+  return new Set([...seen].filter(([, both]) => both === 3).map(([group]) => group));
+}
+
+/** Searches all mappings for the one that leaves the fewest inverted units, and for a match with the mirror image. */
+export function searchMappings(
+  units: readonly IntendedUnit[],
+  symmetry: Symmetry,
+  base: Int32Array,
+  model: UnitTable,
+  evidence: BondingEvidence | null,
+): MappingSearch {
+  const walk = new Walk(units, symmetry, base, model, evidence);
+  let best: Tally = {
+    bonding: Number.POSITIVE_INFINITY,
+    inverted: Number.POSITIVE_INFINITY,
+    undecided: Number.POSITIVE_INFINITY,
+  };
+  let image: Int32Array = base;
+  let arrangements: Arrangement[] = [];
+  let equivalent = 0;
+  let choices = new Map<string, number[]>();
+  walk.run(
+    false,
+    () => best,
+    (tally, found, outcome) => {
+      if (compareTallies(tally, best) < 0) {
+        best = { ...tally };
+        image = found;
+        arrangements = [...outcome];
+        equivalent = 0;
+        choices = new Map();
+      }
+      equivalent++;
+      if (tally.inverted > 0 && choices.size < CHOICES_LIMIT) {
+        const set = invertedUnits(units, outcome);
+        choices.set(set.join(' '), set);
+      }
+      return equivalent >= EQUIVALENT_LIMIT && tally.bonding + tally.inverted + tally.undecided === 0;
+    },
+  );
+  let complete = !walk.exhausted;
+  let mirrored = false;
+  if (best.inverted > 0 && best.undecided === 0) {
+    const bound = { bonding: best.bonding, inverted: 0, undecided: 0 };
+    walk.run(
+      true,
+      () => bound,
+      () => {
+        mirrored = true;
+        return true;
+      },
+    );
+    if (walk.exhausted && !mirrored) complete = false;
+  }
+  return {
+    image,
+    arrangements,
+    inverted: best.inverted,
+    undecided: best.undecided,
+    equivalent,
+    choices: [...choices.values()],
+    mirrored,
+    bondingCost: best.bonding,
+    complete,
+  };
+}
+
+/** The relation a search amounts to, in the order of the definitions. */
+export function relationOf(units: readonly IntendedUnit[], search: MappingSearch): Relation {
+  if (search.undecided > 0) return 'undecided';
+  if (search.inverted === 0) return 'same';
+  if (!search.complete) return 'undecided';
+  if (search.mirrored) return 'enantiomer';
+  if (search.inverted === 1) {
+    const centre = search.choices.some(choice => choice.every(u => units[u]!.kind === 'centre'));
+    if (centre && units.filter(unit => unit.countsForEpimer).length >= 2) return 'epimer';
+  }
+  return 'diastereomer';
+}
