@@ -20,6 +20,7 @@ import {
   rankByReference,
 } from './ranking.ts';
 import { rankingGraph } from './ranking-graph.ts';
+import { resonanceForms } from './resonance.ts';
 import { type UnitTable, unitTable } from './unit-table.ts';
 
 /** How many ways undecided units are tried before a ranking that may rest on them is given up. */
@@ -271,10 +272,26 @@ export function labelUnits(
   settings: Settings,
 ): { readonly units: LabelledUnit[]; readonly peakNodes: number } {
   const labeller = new Labeller(molecule, units, settings);
-  const result: LabelledUnit[] = [];
+  const indices: number[] = [];
+  let result: LabelledUnit[] = [];
   units.forEach((_, index) => {
     const one = labeller.label(index);
-    if (one !== null) result.push(one);
+    if (one === null) return;
+    result.push(one);
+    indices.push(index);
   });
+  if (result.length > 0) {
+    for (const form of resonanceForms(molecule)) {
+      const other = new Labeller(form, units, settings);
+      result = result.map((one, i) => withFormNoted(one, other.label(indices[i]!)));
+    }
+  }
   return { units: result, peakNodes: labeller.digraph.peak };
+}
+
+function withFormNoted(one: LabelledUnit, other: LabelledUnit | null): LabelledUnit {
+  if (one.descriptor === null || other === null || other.descriptor === one.descriptor) return one;
+  const letter = other.descriptor ?? 'no letter';
+  const warning = `the letter holds for the resonance form drawn; another form of the same compound gives ${letter}`;
+  return one.warnings.includes(warning) ? one : { ...one, warnings: [...one.warnings, warning] };
 }
