@@ -1,14 +1,12 @@
 /** The Electron shell: one window on the built page, the host's calls over IPC, menus, dialogs and file associations. */
 import { app, BrowserWindow, dialog, ipcMain, Menu, protocol, session } from 'electron';
-import { basename, dirname, join } from 'node:path';
+import { dirname, join } from 'node:path';
 import { fileURLToPath } from 'node:url';
-import { writeAtomically, WriteError } from '../core/commands/atomic-write.ts';
 import type { HostEvent } from '../renderer/host.ts';
-import { HostError, type Request } from '../renderer/host-messages.ts';
 import { DEMO_SWITCH, filesOf } from './arguments.ts';
 import { EVENT_CHANNEL } from './bridge.ts';
 import { demoFiles } from './demo.ts';
-import { OPEN_EXTENSIONS } from './associations.ts';
+import { Dialogs } from './dialogs.ts';
 import { configFolder, stateFolder } from './files/places.ts';
 import { HostService } from './host-service.ts';
 import { listen } from './ipc.ts';
@@ -37,8 +35,6 @@ let window: BrowserWindow | null = null;
 /** Files the system handed over before the window was there. */
 const waiting: string[] = [];
 let service: HostService | null = null;
-/** The folder that dialogs start in. */
-let lastFolder: string | null = null;
 
 function log(message: string): void {
   process.stderr.write(`deasil: ${message}\n`);
@@ -46,41 +42,6 @@ function log(message: string): void {
 
 function send(event: HostEvent): void {
   window?.webContents.send(EVENT_CHANNEL, event);
-}
-
-async function chooseFiles(): Promise<readonly string[]> {
-  if (!window) return [];
-  const answer = await dialog.showOpenDialog(window, {
-    properties: ['openFile', 'multiSelections'],
-    filters: [
-      { name: 'Structures', extensions: [...OPEN_EXTENSIONS] },
-      { name: 'All files', extensions: ['*'] },
-    ],
-    ...(lastFolder === null ? {} : { defaultPath: lastFolder }),
-  });
-  const [first] = answer.filePaths;
-  if (first !== undefined) lastFolder = dirname(first);
-  return answer.filePaths;
-}
-
-async function save(request: Request<'save'>, bytes: Uint8Array): Promise<string | null> {
-  if (!window) return null;
-  const answer = await dialog.showSaveDialog(window, {
-    defaultPath: lastFolder === null ? request.name : join(lastFolder, request.name),
-    filters:
-      request.extensions.length > 0
-        ? [{ name: request.extensions.join(', '), extensions: [...request.extensions] }]
-        : [],
-  });
-  if (answer.canceled || answer.filePath === '') return null;
-  try {
-    await writeAtomically(answer.filePath, bytes);
-  } catch (error) {
-    if (error instanceof WriteError) throw new HostError('not-written', error.message, error);
-    throw error;
-  }
-  lastFolder = dirname(answer.filePath);
-  return basename(answer.filePath);
 }
 
 function openFiles(paths: readonly string[]): void {
@@ -135,12 +96,13 @@ function createWindow(): void {
 async function ready(): Promise<void> {
   lockSession(session.defaultSession);
   servePage(await WindowFiles.list(join(root, 'dist', 'window')));
+  const dialogs = new Dialogs(dialog, () => window);
   const host = new HostService({
     info: { version: app.getVersion(), shell: 'electron', platform: process.platform },
     configFolder: configFolder(),
     stateFolder: stateFolder(),
-    chooseFiles,
-    save,
+    chooseFiles: () => dialogs.chooseFiles(),
+    save: (request, bytes) => dialogs.save(request, bytes),
     send,
     log,
   });

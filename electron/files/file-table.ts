@@ -66,7 +66,7 @@ export class FileTable {
 
   /** Enters content that has no path; it is kept in a private temporary folder until `dispose`. @throws HostError `too-large`. */
   async offer(name: string, content: AsyncIterable<Uint8Array>, limit = CONTENT_LIMIT): Promise<HostFile> {
-    this.#folder ??= await mkdtemp(join(tmpdir(), 'deasil-'));
+    this.#folder ??= await mkdtemp(join(tmpdir(), 'deasil-content-'));
     const path = join(this.#folder, randomBytes(16).toString('hex'));
     const hash = createHash('sha256');
     const handle = await open(path, 'wx', 0o600);

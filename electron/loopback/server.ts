@@ -141,7 +141,12 @@ export class LoopbackHost {
       return;
     }
     const site = request.headers['sec-fetch-site'];
-    const address = new URL(request.url ?? '/', this.origin);
+    const target = request.url ?? '';
+    if (!target.startsWith('/') || !URL.canParse(this.origin + target)) {
+      this.#plain(response, 400, 'That is no address of Deasil.');
+      return;
+    }
+    const address = new URL(this.origin + target);
     const token = address.searchParams.get('token');
     if (address.pathname === '/' && token !== null && request.method === 'GET') {
       this.#admit(request, response, token);
