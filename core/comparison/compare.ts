@@ -1,7 +1,7 @@
 /** Comparison of one entry with its intention: molecules matched one to one, a verdict for each unit, a relation for each molecule. */
 import type { Molecule } from '../chemistry/molecule.ts';
 import type { Descriptor, Docket, Relation, Verdict } from '../docket.ts';
-import type { StereoUnit } from '../perception/unit.ts';
+import type { StereoUnit, UnitKind } from '../perception/unit.ts';
 import { supplyBonding } from './bonding.ts';
 import { type Fragment, type FragmentOptions, type Fragments, fragmentsOf } from './fragment.ts';
 import type { Intention } from './intention.ts';
@@ -19,17 +19,17 @@ import { invertedUnits, type MappingSearch, mixedGroups, relationOf } from './re
 import { type NodeUnit, nodeUnit, unitTable } from './units.ts';
 import { Arrangement, modelUnitOf } from './verdict.ts';
 
-/** A model with its docket; `candidates` are all units the perception saw, also those that ranking found not stereogenic. */
+/** A model with its docket. */
 export interface Examined {
   readonly molecule: Molecule;
   readonly docket: Docket;
-  candidates(): readonly StereoUnit[];
 }
 
 /** What the comparison says of one unit of the model's docket, or of an intended unit that has none there. */
 export interface UnitVerdict {
   /** Index in the docket of the model, null for an intended unit without one. */
   readonly unit: number | null;
+  readonly kind: UnitKind;
   readonly verdict: Verdict;
   /** Index in the docket of the intention, null when nothing was asked for. */
   readonly intendedUnit: number | null;
@@ -99,7 +99,7 @@ function otherCompound(examined: Examined, difference: string): EntryComparison 
   return {
     examined,
     relation: 'other compound',
-    units: examined.docket.units.map((_, unit) => openUnit(unit)),
+    units: examined.docket.units.map(({ unit }, u) => openUnit(u, unit.kind)),
     molecules: largest ? [{ atoms: largest.atoms, relation: 'other compound' }] : [],
     mapping: null,
     equivalentMappings: 0,
@@ -109,9 +109,11 @@ function otherCompound(examined: Examined, difference: string): EntryComparison 
   };
 }
 
-function openUnit(unit: number): UnitVerdict {
+/** A unit for which nothing was asked. */
+export function openUnit(unit: number, kind: UnitKind): UnitVerdict {
   return {
     unit,
+    kind,
     verdict: 'open',
     intendedUnit: null,
     intended: null,
@@ -276,6 +278,7 @@ function judgeAsItStands(
       const whole = unit.group !== -1 && !mixed.has(unit.group);
       units.push({
         unit: index === -1 ? null : index,
+        kind: unit.kind,
         verdict: verdictOf(search.arrangements[u]!, wrong.has(u), whole, unit.descriptor, found),
         intendedUnit: unit.index,
         intended: unit.descriptor,
@@ -291,8 +294,8 @@ function judgeAsItStands(
       for (const choice of search.choices) choices.push(choice.flatMap(u => [atomsOf(u)]));
     }
   }
-  examined.docket.units.forEach((_, u) => {
-    if (!settled.has(u)) units.push(openUnit(u));
+  examined.docket.units.forEach(({ unit }, u) => {
+    if (!settled.has(u)) units.push(openUnit(u, unit.kind));
   });
   units.sort((a, b) => (a.unit ?? Number.MAX_SAFE_INTEGER) - (b.unit ?? Number.MAX_SAFE_INTEGER));
   noteAbsent(pairing, intended.list, judged, said);
@@ -364,9 +367,10 @@ function judgeMatch(examined: Examined, fragments: Fragments, match: FragmentMat
   let table = unitTable(units, match.model.count);
   let search = searchMatch(match, table);
   if (search.arrangements.includes(Arrangement.missing)) {
+    // A unit that ranking found not stereogenic in the model may be so in the intention (meso against chiral).
     const key = (unit: StereoUnit): string => `${unit.kind} ${unit.atoms.join(' ')}`;
     const known = new Set(examined.docket.units.map(({ unit }) => key(unit)));
-    for (const candidate of examined.candidates()) if (!known.has(key(candidate))) add(candidate, -1);
+    for (const candidate of examined.docket.candidates) if (!known.has(key(candidate))) add(candidate, -1);
     table = unitTable(units, match.model.count);
     search = searchMatch(match, table);
   }

@@ -42,7 +42,12 @@ export function stereoStatements(molecule: Molecule, docket: Docket): StereoStat
   return fragments.list.map((fragment, index) => statementOf(docket, fragments, fragment, index));
 }
 
-function statementOf(docket: Docket, fragments: Fragments, fragment: Fragment, index: number): StereoStatement {
+function statementOf(
+  docket: Docket,
+  fragments: Fragments,
+  fragment: Fragment,
+  index: number,
+): StereoStatement {
   const nodeUnits: NodeUnit[] = [];
   for (const unit of docket.candidates) {
     if (unit.labile !== null) continue;
@@ -50,7 +55,8 @@ function statementOf(docket: Docket, fragments: Fragments, fragment: Fragment, i
     if (placed !== null) nodeUnits.push(placed);
   }
   const stable = docket.units.filter(
-    ({ unit }) => unit.labile === null && fragments.fragmentOf[unit.ends[0]?.atom ?? unit.atoms[0]!] === index,
+    ({ unit }) =>
+      unit.labile === null && fragments.fragmentOf[unit.ends[0]?.atom ?? unit.atoms[0]!] === index,
   );
   const base = { molecule: fragment.id, units: stable.length };
   if (nodeUnits.length === 0) return { ...base, stereoisomers: 1, chirality: 'achiral' };
@@ -67,7 +73,8 @@ function statementOf(docket: Docket, fragments: Fragments, fragment: Fragment, i
     // A candidate that is not stereogenic may stand either way: it is left out of the comparison.
     const matters = nodeUnits.map(({ unit }) => listed.has(unit));
     const achiral = actions.some(action => invertsAll(action, nodeUnits, chiralKind, matters));
-    const several = stable.filter(({ descriptor }) => descriptor !== null && /^[RSMP]$/u.test(descriptor)).length >= 2;
+    const several =
+      stable.filter(({ descriptor }) => descriptor !== null && /^[RSMP]$/u.test(descriptor)).length >= 2;
     chirality = !achiral ? 'chiral' : several && someChiral ? 'meso' : 'achiral';
   }
   return { ...base, stereoisomers: all, chirality };
