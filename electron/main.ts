@@ -1,7 +1,6 @@
 /** The Electron shell: one window on the built page, the host's calls over IPC, menus, dialogs and file associations. */
 import { app, BrowserWindow, dialog, ipcMain, Menu, protocol, session } from 'electron';
-import { dirname, join } from 'node:path';
-import { fileURLToPath } from 'node:url';
+import { join } from 'node:path';
 import type { HostEvent } from '../renderer/host.ts';
 import { DEMO_SWITCH, filesOf } from './arguments.ts';
 import { EVENT_CHANNEL } from './bridge.ts';
@@ -23,8 +22,8 @@ import {
 } from './security.ts';
 import { WindowFiles } from './window-files.ts';
 
-const here = dirname(fileURLToPath(import.meta.url));
-const root = join(here, '..', '..');
+/** The program's folder: the checkout, or the archive when packed. */
+const root = app.getAppPath();
 
 const INITIAL_WIDTH = 1360;
 const INITIAL_HEIGHT = 860;
@@ -74,7 +73,7 @@ function createWindow(): void {
     title: 'Deasil',
     show: false,
     icon: join(root, 'assets', 'icons', 'icon.png'),
-    webPreferences: webPreferences(join(here, 'preload.cjs')),
+    webPreferences: webPreferences(join(root, 'dist', 'electron', 'preload.cjs')),
   });
   window = created;
   created.once('ready-to-show', () => {

@@ -32,7 +32,7 @@ const KEY_NAMES: Readonly<Record<string, string>> = {
 /** Keys in Electron's notation. */
 export function accelerator(keys: string): string {
   return keys
-    .split(/(?<=.)\+/)
+    .split(/\+(?=.)/)
     .map(key => KEY_NAMES[key] ?? (key.length === 1 ? key.toUpperCase() : key))
     .join('+');
 }
