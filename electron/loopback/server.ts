@@ -86,9 +86,13 @@ export class LoopbackHost {
   /** Starts listening on 127.0.0.1. @param port 0 for one that the system picks. */
   async listen(port = 0): Promise<void> {
     await new Promise<void>((resolve, reject) => {
-      this.#server.once('error', reject);
+      const refuse = (error: Error): void => {
+        const taken = 'code' in error && error.code === 'EADDRINUSE';
+        reject(taken ? new Error(`port ${port} is in use; name another, or none`, { cause: error }) : error);
+      };
+      this.#server.once('error', refuse);
       this.#server.listen(port, ADDRESS, () => {
-        this.#server.off('error', reject);
+        this.#server.off('error', refuse);
         resolve();
       });
     });
