@@ -4,6 +4,7 @@
  *
  *     node build.config.mjs                everything
  *     node build.config.mjs --if-stale     everything, only when a source has changed since the last build
+ *     node build.config.mjs sbom           the bill of materials of the last build, into `dist/sbom.json`
  *     node build.config.mjs bench          the benchmarks, into `dist/bench`
  *
  * Each part is built aside and moved into place whole, so that a running program never meets half a build.
@@ -257,10 +258,38 @@ async function buildBench() {
   });
 }
 
+/** The software bill of materials of what is shipped (CycloneDX): the lock file's entries for the packages in the bundles. */
+async function buildSbom() {
+  const { execFile } = await import('node:child_process');
+  const { promisify } = await import('node:util');
+  const npm = process.platform === 'win32' ? 'npm.cmd' : 'npm';
+  const options = { cwd: root, maxBuffer: 64 * 1024 * 1024, shell: process.platform === 'win32' };
+  const { stdout } = await promisify(execFile)(npm, ['sbom', '--sbom-format', 'cyclonedx', '--package-lock-only'], options);
+  const document = JSON.parse(stdout);
+  const shipped = JSON.parse(await readFile(join(dist, 'licences.json'), 'utf8'));
+  const wanted = new Set(shipped.map(entry => `${entry.name}@${entry.version}`));
+  const components = [];
+  for (const component of document.components) {
+    const name = component.group ? `${component.group}/${component.name}` : component.name;
+    if (!wanted.delete(`${name}@${component.version}`)) continue;
+    // Packages are bundled, so npm holds them for tools of development; they are shipped all the same.
+    const properties = (component.properties ?? []).filter(({ name: property }) => property !== 'cdx:npm:package:development');
+    components.push({ ...component, scope: 'required', properties });
+  }
+  if (wanted.size > 0) throw new Error(`build: the lock file does not know ${[...wanted].join(', ')}`);
+  const references = new Set([document.metadata.component['bom-ref'], ...components.map(component => component['bom-ref'])]);
+  const dependencies = document.dependencies
+    .filter(({ ref }) => references.has(ref))
+    .map(({ ref, dependsOn = [] }) => ({ ref, dependsOn: dependsOn.filter(other => references.has(other)) }));
+  await writeFile(join(dist, 'sbom.json'), JSON.stringify({ ...document, components, dependencies }, null, 1));
+  console.error(`build: ${components.length} packages in dist/sbom.json`);
+}
+
 const [what] = process.argv.slice(2);
 if (what === 'bench') await buildBench();
+else if (what === 'sbom') await buildSbom();
 else if (what === undefined || what === '--if-stale') await locked(() => buildAll(what !== undefined));
 else {
-  console.error(`build: unknown argument ${what}; use none, --if-stale or bench`);
+  console.error(`build: unknown argument ${what}; use none, --if-stale, bench or sbom`);
   process.exitCode = 2;
 }
