@@ -277,6 +277,8 @@ async function buildSbom() {
     components.push({ ...component, scope: 'required', properties });
   }
   if (wanted.size > 0) throw new Error(`build: the lock file does not know ${[...wanted].join(', ')}`);
+  // npm names the component after the folder of the checkout.
+  document.metadata.component.name = JSON.parse(await readFile(join(root, 'package.json'), 'utf8')).name;
   const references = new Set([document.metadata.component['bom-ref'], ...components.map(component => component['bom-ref'])]);
   const dependencies = document.dependencies
     .filter(({ ref }) => references.has(ref))
