@@ -150,7 +150,7 @@ export interface OpenedWindow {
   readonly page: Page;
   readonly context: BrowserContext;
   readonly host: LoopbackHost;
-  /** What the page said on its console as an error, and breaches of its content policy. */
+  /** What the page said on its console as an error, breaches of its content policy, and requests to anywhere but the host. */
   readonly complaints: string[];
   close(): Promise<void>;
 }
@@ -195,6 +195,12 @@ export async function openWindow(files: readonly string[], options: OpenOptions 
   const page = await context.newPage();
   page.on('console', message => {
     if (message.type() === 'error') complaints.push(message.text());
+  });
+  context.on('request', request => {
+    const address = request.url();
+    if (![host.origin, `blob:${host.origin}`, 'data:'].some(own => address.startsWith(own))) {
+      complaints.push(`the page asked for ${address}`);
+    }
   });
   page.on('pageerror', error => complaints.push(error.stack ?? error.message));
   await page.goto(host.address());
