@@ -3,7 +3,8 @@
  * Builds the program into `dist/`: the command, the Electron shell with the loopback host, and the window.
  *
  *     node build.config.mjs                everything
- *     node build.config.mjs --if-stale     everything, only when a source has changed since the last build
+ *     node build.config.mjs window         one part or several: command, electron, window
+ *     node build.config.mjs --if-stale     the same, but only parts that were built from other sources than those there now
  *     node build.config.mjs sbom           the bill of materials of the last build, into `dist/sbom.json`
  *     node build.config.mjs bench          the benchmarks, into `dist/bench`
  *
@@ -18,7 +19,6 @@ import { fileURLToPath } from 'node:url';
 const root = dirname(fileURLToPath(import.meta.url));
 process.chdir(root);
 const dist = join(root, 'dist');
-const stampFile = join(dist, '.stamp');
 const lockFolder = join(root, 'node_modules', '.deasil-build-lock');
 
 /** Sources whose change makes the build stale. */
@@ -108,7 +108,7 @@ async function bundle(options) {
 }
 
 async function buildCommand(staging, packages) {
-  if (!present('core/commands/main.ts')) return;
+  if (!present('core/commands/main.ts')) return false;
   const dir = join(staging, 'command');
   await bundle({ input: { deasil: 'core/commands/main.ts' }, dir, format: 'esm', part: 'command', packages });
   const entry = join(dir, 'deasil.js');
@@ -116,27 +116,29 @@ async function buildCommand(staging, packages) {
   if (!text.startsWith('#!')) await writeFile(entry, `#!/usr/bin/env node\n${text}`);
   await chmod(entry, 0o755);
   for (const asset of COMMAND_ASSETS) await copyFile(join(root, asset), join(dir, basename(asset)));
+  return true;
 }
 
 async function buildShell(staging, packages) {
   const entries = { main: 'electron/main.ts', start: 'electron/start.ts', loopback: 'electron/loopback/serve.ts' };
   const input = Object.fromEntries(Object.entries(entries).filter(([, source]) => present(source)));
-  if (Object.keys(input).length === 0) return;
+  if (Object.keys(input).length === 0) return false;
   const dir = join(staging, 'electron');
-  await bundle({ input, dir, format: 'esm', part: 'shell', packages });
-  if (!present('electron/preload.ts')) return;
+  await bundle({ input, dir, format: 'esm', part: 'electron', packages });
+  if (!present('electron/preload.ts')) return true;
   await bundle({
     input: { preload: 'electron/preload.ts' },
     dir,
     format: 'cjs',
     extension: 'cjs',
-    part: 'shell',
+    part: 'electron',
     packages,
   });
+  return true;
 }
 
 async function buildWindow(staging, packages) {
-  if (!present('vite.config.ts')) return;
+  if (!present('vite.config.ts')) return false;
   const { build, loadConfigFromFile } = await import('vite');
   const environment = { command: 'build', mode: 'production' };
   const loaded = await loadConfigFromFile(environment, join(root, 'vite.config.ts'), root, 'error');
@@ -152,6 +154,7 @@ async function buildWindow(staging, packages) {
     worker: { ...config.worker, plugins: () => [...(workerPlugins?.() ?? []), packageCollector(packages, 'window')] },
     build: { ...config.build, outDir: join(staging, 'window'), emptyOutDir: true },
   });
+  return true;
 }
 
 const missing = [];
@@ -218,31 +221,63 @@ async function locked(task) {
   }
 }
 
-async function buildAll(onlyStale) {
-  const mark = await fingerprint();
-  if (onlyStale && (await readFile(stampFile, 'utf8').catch(() => '')) === mark) return;
-  const started = Date.now();
-  await mkdir(dist, { recursive: true });
-  const staging = join(dist, `.staging-${process.pid}`);
+const PARTS = { command: buildCommand, electron: buildShell, window: buildWindow };
+
+/** Packages that are shipped beside a bundle rather than in it. */
+const BESIDE = { command: NATIVE, electron: ['electron'], window: [] };
+
+const stampFile = part => join(dist, `.stamp-${part}`);
+const licencesFile = part => join(dist, `.licences-${part}.json`);
+
+/** Builds one part. @returns what went wrong, or null. */
+async function buildPart(part, mark, staging) {
   const packages = new Map();
   try {
-    await Promise.all([
-      buildCommand(staging, packages),
-      buildShell(staging, packages),
-      buildWindow(staging, packages),
-    ]);
-    for (const name of NATIVE) addPackage(packages, join(root, 'node_modules', ...name.split('/')), 'command');
-    addPackage(packages, join(root, 'node_modules', 'electron'), 'shell');
-    const list = JSON.stringify(await licences(packages), null, 1);
-    if (existsSync(join(staging, 'window'))) await writeFile(join(staging, 'window', 'licences.json'), list);
-    for (const part of ['command', 'electron', 'window']) await install(staging, part);
-    await writeFile(join(dist, 'licences.json'), list);
-  } finally {
-    await rm(staging, { recursive: true, force: true });
+    if (!(await PARTS[part](staging, packages))) return null;
+    for (const name of BESIDE[part]) addPackage(packages, join(root, 'node_modules', ...name.split('/')), part);
+    await writeFile(licencesFile(part), JSON.stringify(await licences(packages)));
+    await install(staging, part);
+    await writeFile(stampFile(part), mark);
+    return null;
+  } catch (error) {
+    await rm(stampFile(part), { force: true });
+    return `build: ${part} failed: ${error instanceof Error ? error.message : String(error)}`;
   }
-  await writeFile(stampFile, mark);
+}
+
+/** Puts the parts' lists of licences together, for the program to show. */
+async function joinLicences() {
+  const list = new Map();
+  for (const part of Object.keys(PARTS)) {
+    const text = await readFile(licencesFile(part), 'utf8').catch(() => '[]');
+    for (const entry of JSON.parse(text)) {
+      const key = `${entry.name}@${entry.version}`;
+      const earlier = list.get(key);
+      list.set(key, { ...entry, parts: [...(earlier?.parts ?? []), ...entry.parts] });
+    }
+  }
+  const text = JSON.stringify([...list.values()].sort((one, other) => byText(one.name, other.name)), null, 1);
+  await writeFile(join(dist, 'licences.json'), text);
+  if (existsSync(join(dist, 'window'))) await writeFile(join(dist, 'window', 'licences.json'), text);
+}
+
+async function buildParts(parts, onlyStale) {
+  const started = Date.now();
+  const mark = await fingerprint();
+  const stale = [];
+  for (const part of parts) {
+    if (!onlyStale || (await readFile(stampFile(part), 'utf8').catch(() => '')) !== mark) stale.push(part);
+  }
+  if (stale.length === 0) return;
+  await mkdir(dist, { recursive: true });
+  const staging = join(dist, `.staging-${process.pid}`);
+  const failures = await Promise.all(stale.map(part => buildPart(part, mark, staging)));
+  await rm(staging, { recursive: true, force: true });
+  await joinLicences();
   for (const source of missing) console.error(`build: ${source} is not there; its part was left out`);
-  console.error(`build: ${((Date.now() - started) / 1000).toFixed(1)} s`);
+  for (const failure of failures) if (failure !== null) console.error(failure);
+  if (failures.some(failure => failure !== null)) process.exitCode = 1;
+  console.error(`build: ${stale.join(', ')} in ${((Date.now() - started) / 1000).toFixed(1)} s`);
 }
 
 async function buildBench() {
@@ -287,11 +322,14 @@ async function buildSbom() {
   console.error(`build: ${components.length} packages in dist/sbom.json`);
 }
 
-const [what] = process.argv.slice(2);
-if (what === 'bench') await buildBench();
-else if (what === 'sbom') await buildSbom();
-else if (what === undefined || what === '--if-stale') await locked(() => buildAll(what !== undefined));
-else {
-  console.error(`build: unknown argument ${what}; use none, --if-stale, bench or sbom`);
+const args = process.argv.slice(2);
+const names = args.filter(argument => argument !== '--if-stale');
+if (names.length === 1 && names[0] === 'bench') await buildBench();
+else if (names.length === 1 && names[0] === 'sbom') await buildSbom();
+else if (names.every(name => Object.hasOwn(PARTS, name))) {
+  const parts = names.length === 0 ? Object.keys(PARTS) : names;
+  await locked(() => buildParts(parts, args.includes('--if-stale')));
+} else {
+  console.error(`build: ${names.join(' ')} is not understood; parts are ${Object.keys(PARTS).join(', ')}, or bench, or sbom`);
   process.exitCode = 2;
 }

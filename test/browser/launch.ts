@@ -129,9 +129,9 @@ export async function launchBrowser(extraFlags: readonly string[] = []): Promise
   });
 }
 
-/** Builds the program when a source has changed since the last build. @throws Error with the build's own words. */
-export function ensureBuilt(): void {
-  const result = spawnSync(process.execPath, ['build.config.mjs', '--if-stale'], {
+/** Builds parts of the program (`command`, `electron`, `window`) whose sources have changed since their last build. @throws Error with the build's own words. */
+export function ensureBuilt(...parts: readonly ('command' | 'electron' | 'window')[]): void {
+  const result = spawnSync(process.execPath, ['build.config.mjs', '--if-stale', ...parts], {
     cwd: root,
     encoding: 'utf8',
   });
@@ -170,7 +170,7 @@ export interface OpenOptions {
  * Without `browser` one is launched and ends with `close`.
  */
 export async function openWindow(files: readonly string[], options: OpenOptions = {}): Promise<OpenedWindow> {
-  ensureBuilt();
+  ensureBuilt('window');
   const own = mkdtempSync(join(tmpdir(), 'deasil-test-'));
   const host = await serveLoopback({
     windowFolder: join(root, 'dist', 'window'),

@@ -15,7 +15,9 @@ const denyNetwork = pathToFileURL(join(root, 'test', 'deny-network.mjs')).href;
 let folder: string;
 const children: ChildProcessWithoutNullStreams[] = [];
 
-beforeAll(ensureBuilt);
+beforeAll(() => {
+  ensureBuilt('electron', 'window');
+});
 
 beforeEach(() => {
   folder = mkdtempSync(join(tmpdir(), 'deasil-start-'));

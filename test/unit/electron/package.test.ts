@@ -68,7 +68,7 @@ describe('what is packed', () => {
   let packed: string[];
 
   beforeAll(async () => {
-    ensureBuilt();
+    ensureBuilt('electron', 'window');
     folder = mkdtempSync(join(tmpdir(), 'deasil-package-'));
     const runtime = join(folder, 'runtime');
     mkdirSync(join(runtime, 'resources'), { recursive: true });
