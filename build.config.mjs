@@ -84,6 +84,20 @@ function addPackage(packages, folder, part) {
   packages.set(folder, parts);
 }
 
+/** pdfkit looks its metrics of the standard fonts up beside itself; in a bundle they have to be part of it. */
+const standardFonts = {
+  name: 'deasil-standard-fonts',
+  transform: {
+    filter: { id: /pdfkit\.node\.mjs$/ },
+    handler(code) {
+      const names = [...code.matchAll(/require\$1\('#standard-fonts\/(\w+)'\)/g)].map(([, name]) => name);
+      if (names.length === 0) throw new Error('pdfkit no longer looks its fonts up as the build expects');
+      const imports = names.map(name => `import font${name} from '#standard-fonts/${name}';\n`).join('');
+      return imports + code.replaceAll(/require\$1\('#standard-fonts\/(\w+)'\)/g, 'font$1');
+    },
+  },
+};
+
 /** Bundles TypeScript for Node. */
 async function bundle(options) {
   const { build } = await import('rolldown');
@@ -95,7 +109,7 @@ async function bundle(options) {
     external: [...NATIVE, 'electron', ...external],
     logLevel: 'warn',
     checks: { pluginTimings: false },
-    plugins: [packageCollector(packages, part)],
+    plugins: [standardFonts, packageCollector(packages, part)],
     transform: { define: { 'process.env.NODE_ENV': '"production"' } },
     output: {
       dir,
