@@ -1,0 +1,109 @@
+/**
+ * Symmetry classes: atoms that the constitution does not tell apart, by iterative refinement of what surrounds them
+ * (H. L. Morgan, J. Chem. Doc. 1965, 5, 107, with hashes for the sums). Configuration is not looked at.
+ *
+ * Equal atoms have equal classes; the reverse can fail in highly symmetric graphs, so a class is a reason to look
+ * closer and never a proof.
+ */
+import type { Molecule } from './molecule.ts';
+
+const MOST_ROUNDS = 64;
+
+function mix(hash: number, value: number): number {
+  let h = Math.imul(hash ^ value, 0x9e3779b1);
+  h ^= h >>> 15;
+  h = Math.imul(h, 0x85ebca77);
+  return h ^ (h >>> 13);
+}
+
+/**
+ * Class of each atom. Bond orders enter through the unsaturation of each atom, not bond by bond, so that Kekulé
+ * structures do not matter; terminal O and S of one acid group (P, S, As, Se, N) count as equal whichever bears the
+ * charge, the proton or the double bond.
+ */
+export function symmetryClasses(molecule: Molecule): Int32Array {
+  const { atomCount, neighbourStart, neighbours, elements, isotopes } = molecule;
+  let colours = new Int32Array(atomCount);
+  for (let i = 0; i < atomCount; i++) {
+    let colour = mix(mix(7, elements[i]!), isotopes[i]!);
+    if (!isAcidTerminal(molecule, i)) {
+      colour = mix(colour, unsaturation(molecule, i) * 16 + allHydrogens(molecule, i));
+      if (molecule.charges[i] !== 0) colour = mix(colour, 0x100 + molecule.charges[i]!);
+    } else colour = mix(colour, 0x777);
+    colours[i] = colour;
+  }
+  let classes = countDistinct(colours);
+  for (let round = 0; round < MOST_ROUNDS; round++) {
+    const next = new Int32Array(atomCount);
+    for (let i = 0; i < atomCount; i++) {
+      // The sum of well-mixed hashes is independent of the order of the neighbours.
+      let sum = 0;
+      const acid = isAcidTerminal(molecule, i);
+      for (let k = neighbourStart[i]!; k < neighbourStart[i + 1]!; k++) {
+        const neighbour = neighbours[k]!;
+        // A proton that either oxygen of an acid group can bear tells them apart no more.
+        if (acid && elements[neighbour] === 1) continue;
+        sum = (sum + mix(0x51ed, colours[neighbour]!)) | 0;
+      }
+      next[i] = mix(colours[i]!, sum);
+    }
+    const count = countDistinct(next);
+    if (count <= classes) break;
+    classes = count;
+    colours = next;
+  }
+  return colours;
+}
+
+function countDistinct(values: Int32Array): number {
+  const sorted = values.slice().sort();
+  let count = sorted.length > 0 ? 1 : 0;
+  for (let i = 1; i < sorted.length; i++) if (sorted[i] !== sorted[i - 1]) count++;
+  return count;
+}
+
+function allHydrogens(molecule: Molecule, atom: number): number {
+  let count = molecule.hydrogens[atom]!;
+  for (let k = molecule.neighbourStart[atom]!; k < molecule.neighbourStart[atom + 1]!; k++) {
+    const neighbour = molecule.neighbours[k]!;
+    if (molecule.elements[neighbour] === 1 && molecule.isotopes[neighbour] === 0) count++;
+  }
+  return count;
+}
+
+function unsaturation(molecule: Molecule, atom: number): number {
+  let pi = 0;
+  for (let k = molecule.neighbourStart[atom]!; k < molecule.neighbourStart[atom + 1]!; k++) {
+    pi += Math.max(1, molecule.bondOrders[molecule.neighbourBonds[k]!]!) - 1;
+  }
+  return pi;
+}
+
+/** O, S or Se with nothing but hydrogen on it, bound to an acid-forming centre that bears a double bond to such an atom. */
+export function isAcidTerminal(molecule: Molecule, atom: number): boolean {
+  const z = molecule.elements[atom]!;
+  if (z !== 8 && z !== 16 && z !== 34) return false;
+  let centre = -1;
+  for (let k = molecule.neighbourStart[atom]!; k < molecule.neighbourStart[atom + 1]!; k++) {
+    const neighbour = molecule.neighbours[k]!;
+    if (molecule.elements[neighbour] === 1) {
+      if (molecule.isotopes[neighbour] !== 0) return false;
+      continue;
+    }
+    if (centre !== -1) return false;
+    centre = neighbour;
+  }
+  if (centre === -1) return false;
+  switch (molecule.elements[centre]) {
+    case 7:
+    case 15:
+    case 16:
+    case 33:
+    case 34:
+    case 51:
+    case 52:
+      return true;
+    default:
+      return false;
+  }
+}

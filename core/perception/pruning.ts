@@ -1,0 +1,98 @@
+/**
+ * Which candidates constitution alone rules out, so that no digraph is built for them: two ligands alike whose
+ * branches hold nothing that could make them differ.
+ *
+ * Only certain cases are dropped; the ranking decides the rest.
+ */
+import { bondBetween, IMPLICIT_HYDROGEN, LONE_PAIR } from '../chemistry/molecule.ts';
+import type { PerceptionContext } from './context.ts';
+import type { Ligand, UnitEnd } from './unit.ts';
+
+export interface Prunable {
+  readonly ends: readonly UnitEnd[];
+}
+
+/** The candidates that may be stereogenic, in their order. */
+export function prune<T extends Prunable>(context: PerceptionContext, candidates: readonly T[]): T[] {
+  let kept = [...candidates];
+  for (;;) {
+    const holders = new Int32Array(context.molecule.atomCount);
+    for (const candidate of kept) for (const end of candidate.ends) holders[end.atom]!++;
+    const next = kept.filter(candidate => candidate.ends.every(end => maySeparate(context, candidate, end, holders)));
+    if (next.length === kept.length) return next;
+    kept = next;
+  }
+}
+
+/** Whether the ligands of one end may all be told apart. */
+function maySeparate(
+  context: PerceptionContext,
+  candidate: Prunable,
+  end: UnitEnd,
+  holders: Int32Array,
+): boolean {
+  const { ligands } = end;
+  let ringTies = 0;
+  let open = true;
+  for (let i = 0; i < ligands.length; i++) {
+    for (let j = i + 1; j < ligands.length; j++) {
+      if (!alike(context, ligands[i]!, ligands[j]!)) continue;
+      const first = ligands[i]!;
+      if (first < 0) return false;
+      if (!inOneRing(context, end.atom, first, ligands[j]!)) {
+        if (!branchHolds(context, candidate, end.atom, first, holders)) return false;
+        continue;
+      }
+      ringTies++;
+      if (!branchHolds(context, candidate, end.atom, first, holders)) open = false;
+    }
+  }
+  // A single pair of ring ligands with no other unit in reach can be exchanged by symmetry; two pairs, or three alike,
+  // may still be stereogenic (Rule 6).
+  return open || ringTies !== 1 || candidate.ends.length === 2;
+}
+
+function alike(context: PerceptionContext, a: Ligand, b: Ligand): boolean {
+  if (a === LONE_PAIR || b === LONE_PAIR) return a === b;
+  const { molecule, classes } = context;
+  if (a === IMPLICIT_HYDROGEN || b === IMPLICIT_HYDROGEN) {
+    const other = a === IMPLICIT_HYDROGEN ? b : a;
+    return other === IMPLICIT_HYDROGEN || (molecule.elements[other] === 1 && molecule.isotopes[other] === 0);
+  }
+  return classes[a] === classes[b];
+}
+
+function inOneRing(context: PerceptionContext, atom: number, a: Ligand, b: Ligand): boolean {
+  const { molecule, rings } = context;
+  const first = bondBetween(molecule, atom, a);
+  const second = bondBetween(molecule, atom, b);
+  return first >= 0 && second >= 0 && rings.bondInRing[first] === 1 && rings.bondInRing[second] === 1;
+}
+
+/** Whether the part of the molecule reached through `ligand` without passing `atom` has another candidate. */
+function branchHolds(
+  context: PerceptionContext,
+  candidate: Prunable,
+  atom: number,
+  ligand: number,
+  holders: Int32Array,
+): boolean {
+  const { molecule } = context;
+  const own = new Set(candidate.ends.map(end => end.atom));
+  const seen = new Uint8Array(molecule.atomCount);
+  seen[atom] = 1;
+  seen[ligand] = 1;
+  const stack = [ligand];
+  while (stack.length > 0) {
+    const at = stack.pop()!;
+    if (holders[at]! > (own.has(at) ? 1 : 0)) return true;
+    for (let k = molecule.neighbourStart[at]!; k < molecule.neighbourStart[at + 1]!; k++) {
+      const next = molecule.neighbours[k]!;
+      if (seen[next] === 0) {
+        seen[next] = 1;
+        stack.push(next);
+      }
+    }
+  }
+  return false;
+}
