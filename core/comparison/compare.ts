@@ -10,6 +10,7 @@ import {
   firstDifference,
   fragmentCuts,
   type IntendedFragment,
+  matchInside,
   matchPart,
   matchWhole,
   searchMatch,
@@ -60,7 +61,7 @@ export interface EntryComparison {
   readonly mapping: Int32Array | null;
   /** Mappings that differ where it matters and leave as few inverted units. */
   readonly equivalentMappings: number;
-  /** Where symmetry leaves a choice: each set of intended units (indices in its docket) that may be called inverted, with the model atoms of each. */
+  /** Where symmetry leaves a choice: each set of units that may be called inverted, as the model atoms of each unit. */
   readonly choices: readonly (readonly (readonly number[])[])[];
   /** The first difference when the compound is another one. */
   readonly difference: string | null;
@@ -175,6 +176,8 @@ function pairPart(model: Molecule, intention: Intention, cut: FragmentOptions): 
   const chief = principalIntended(intention.cut(cut).list);
   const largest = principal(fragments.list);
   if (!chief || !largest) return null;
+  const inside = matchInside(chief, largest);
+  if (inside.match) return { cut, fragments, matches: [{ model: -1, candidates: [inside.match] }] };
   const pieces = fragments.list.filter(fragment => fragment.count > 1);
   const attempts = pieces.length > 1 ? [pieces, [largest]] : [[largest]];
   for (const attempt of attempts) {
@@ -291,7 +294,8 @@ function judgeAsItStands(
     const matters = source === chief || source.units.length > 0;
     molecules.push({ atoms: match.model.atoms, relation: matters ? relation : null });
     if (search.choices.length > 1) {
-      for (const choice of search.choices) choices.push(choice.flatMap(u => [atomsOf(u)]));
+      for (const { nodes } of search.choices)
+        choices.push(nodes.map(ends => ends.map(node => match.model.atoms[node]!)));
     }
   }
   examined.docket.units.forEach(({ unit }, u) => {
@@ -371,10 +375,33 @@ function judgeMatch(examined: Examined, fragments: Fragments, match: FragmentMat
     const key = (unit: StereoUnit): string => `${unit.kind} ${unit.atoms.join(' ')}`;
     const known = new Set(examined.docket.units.map(({ unit }) => key(unit)));
     for (const candidate of examined.docket.candidates) if (!known.has(key(candidate))) add(candidate, -1);
-    table = unitTable(units, match.model.count);
+    table = unitTable(units, match.model.count, freeNodes(match.model, units, docketIndex));
     search = searchMatch(match, table);
   }
   return { match, search, docketIndex, table };
+}
+
+/** Saturated carbons of a notation or drawing at which ranking finds nothing stereogenic. */
+function freeNodes(model: Fragment, units: readonly NodeUnit[], docketIndex: readonly number[]): Set<number> {
+  const free = new Set<number>();
+  if (model.molecule.dimension === 3) return free;
+  for (let w = 0; w < model.count; w++) {
+    const degree = model.start[w + 1]! - model.start[w]!;
+    if (
+      model.elements[w] === 6 &&
+      model.pi[w] === 0 &&
+      degree + model.hydrogens[w]! === 4 &&
+      model.hydrogens[w]! < 2
+    ) {
+      free.add(w);
+    }
+  }
+  // Those with an arrangement of their own, or stereogenic without one, are judged by it.
+  units.forEach((unit, u) => {
+    if (unit.kind === 'centre' && (docketIndex[u] !== -1 || unit.unit.sense !== 0))
+      free.delete(unit.ends[0]!);
+  });
+  return free;
 }
 
 /** The node numbering of a union of fragments. */

@@ -416,6 +416,54 @@ export function matchPart(
   };
 }
 
+/** Matches an intended molecule with attachment points with a model in which something hangs on these. */
+export function matchInside(intended: IntendedFragment, model: Fragment): MatchResult {
+  const { fragment } = intended;
+  const pattern = initialColours(fragment, 'skeletal');
+  const images: Int32Array[] = [];
+  if (fragment.attachments.some(count => count > 0) && model.count > fragment.count) {
+    placements(
+      fragment,
+      planOf(fragment, pattern),
+      pattern,
+      model,
+      initialColours(model, 'skeletal'),
+      image => {
+        const back = new Int32Array(model.count).fill(-1);
+        for (let v = 0; v < fragment.count; v++) back[image[v]!] = v;
+        let edges = 0;
+        for (let v = 0; v < fragment.count; v++) {
+          const w = image[v]!;
+          let beyond = 0;
+          for (let k = model.start[w]!; k < model.start[w + 1]!; k++) {
+            if (back[model.adjacent[k]!] === -1) beyond++;
+            else edges++;
+          }
+          if (beyond > fragment.attachments[v]!) return false;
+          if (fragment.elements[v] === 6 && fragment.pi[v] !== model.pi[w]) return false;
+        }
+        if (edges === fragment.adjacent.length) images.push(image.slice());
+        return images.length >= PARTIAL_LIMIT;
+      },
+    );
+  }
+  const [base] = images;
+  if (!base) return { match: null, difference: firstDifference(fragment, model) };
+  return {
+    match: {
+      intended,
+      model,
+      level: 'skeletal',
+      base,
+      placements: images,
+      supply: [],
+      evidence: null,
+      warnings: ['what hangs on the attachment points of the intention is not compared'],
+    },
+    difference: null,
+  };
+}
+
 /** Several fragments as one disconnected graph. */
 function joinFragments(parts: readonly Fragment[], fragments: Fragments): Fragment {
   const atoms = Int32Array.from(parts.flatMap(part => [...part.atoms])).sort();

@@ -19,6 +19,14 @@ export interface BondingEvidence {
   cost(intended: number, model: number): number;
 }
 
+/** One set of units that may be called inverted. */
+export interface InvertedChoice {
+  /** Indices into the intended units. */
+  readonly units: readonly number[];
+  /** Model nodes of the ends of each. */
+  readonly nodes: readonly (readonly number[])[];
+}
+
 export interface MappingSearch {
   /** Intended node to model node under the mapping that leaves the fewest inverted units. */
   readonly image: Int32Array;
@@ -30,8 +38,8 @@ export interface MappingSearch {
   readonly undecided: number;
   /** Mappings that differ where it matters and leave as few inverted. */
   readonly equivalent: number;
-  /** The different sets of inverted units (indices into the intended units) such mappings leave. */
-  readonly choices: readonly (readonly number[])[];
+  /** The different sets of model units that such mappings call inverted. */
+  readonly choices: readonly InvertedChoice[];
   /** Whether the mirrored intention is matched without exception. */
   readonly mirrored: boolean;
   /** Smallest bonding cost. */
@@ -163,6 +171,22 @@ class Walk {
   }
 }
 
+/** Notes the units that a mapping calls inverted, once for each set of model atoms. */
+function addChoice(
+  choices: Map<string, InvertedChoice>,
+  units: readonly IntendedUnit[],
+  wrong: readonly number[],
+  image: Int32Array,
+): void {
+  if (choices.size >= CHOICES_LIMIT) return;
+  const nodes = wrong.map(u => units[u]!.ends.map(end => image[end]!).sort((a, b) => a - b));
+  const key = nodes
+    .map(ends => ends.join('-'))
+    .sort()
+    .join(' ');
+  if (!choices.has(key)) choices.set(key, { units: wrong, nodes });
+}
+
 /** Chooses among given mappings, as `searchMappings` does among those of a symmetry; used where only part is mapped. */
 export function searchImages(
   units: readonly IntendedUnit[],
@@ -171,7 +195,7 @@ export function searchImages(
 ): MappingSearch {
   let best: { tally: Tally; image: Int32Array; arrangements: Arrangement[] } | null = null;
   let keys = new Set<string>();
-  let choices = new Map<string, number[]>();
+  let choices = new Map<string, InvertedChoice>();
   const nodes = [...new Set(units.flatMap(nodesOf))];
   for (const image of images) {
     const arrangements = units.map(unit => arrangementOf(unit, image, model));
@@ -190,7 +214,7 @@ export function searchImages(
       choices = new Map();
     }
     keys.add(nodes.map(node => image[node]).join(' '));
-    if (wrong.length > 0 && choices.size < CHOICES_LIMIT) choices.set(wrong.join(' '), wrong);
+    if (wrong.length > 0) addChoice(choices, units, wrong, image);
   }
   if (!best) throw new RangeError('no mapping to choose from');
   return {
@@ -252,7 +276,7 @@ export function searchMappings(
   let image: Int32Array = base;
   let arrangements: Arrangement[] = [];
   let equivalent = 0;
-  let choices = new Map<string, number[]>();
+  let choices = new Map<string, InvertedChoice>();
   walk.run(
     false,
     () => best,
@@ -265,10 +289,7 @@ export function searchMappings(
         choices = new Map();
       }
       equivalent++;
-      if (tally.inverted > 0 && choices.size < CHOICES_LIMIT) {
-        const set = invertedUnits(units, outcome);
-        choices.set(set.join(' '), set);
-      }
+      if (tally.inverted > 0) addChoice(choices, units, invertedUnits(units, outcome), found);
       return equivalent >= EQUIVALENT_LIMIT && tally.bonding + tally.inverted + tally.undecided === 0;
     },
   );
@@ -306,7 +327,7 @@ export function relationOf(units: readonly IntendedUnit[], search: MappingSearch
   if (!search.complete) return 'undecided';
   if (search.mirrored) return 'enantiomer';
   if (search.inverted === 1) {
-    const centre = search.choices.some(choice => choice.every(u => units[u]!.kind === 'centre'));
+    const centre = search.choices.some(choice => choice.units.every(u => units[u]!.kind === 'centre'));
     if (centre && units.filter(unit => unit.countsForEpimer).length >= 2) return 'epimer';
   }
   return 'diastereomer';

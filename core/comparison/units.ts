@@ -72,12 +72,21 @@ export interface UnitTable {
   readonly units: readonly NodeUnit[];
   /** Node to units that have it as an end. */
   readonly at: readonly (readonly number[] | undefined)[];
+  /**
+   * Nodes that could bear a centre but, two of their ligands being alike, have no arrangement to state: in a notation
+   * such a centre matches either arrangement, the exchange of the two ligands changing nothing else.
+   */
+  readonly free: ReadonlySet<number>;
 }
 
-export function unitTable(units: readonly NodeUnit[], count: number): UnitTable {
+export function unitTable(
+  units: readonly NodeUnit[],
+  count: number,
+  free: ReadonlySet<number> = new Set(),
+): UnitTable {
   const at: number[][] = Array.from({ length: count });
   units.forEach((unit, u) => {
     for (const end of unit.ends) (at[end] ??= []).push(u);
   });
-  return { units, at };
+  return { units, at, free };
 }

@@ -41,6 +41,7 @@ export function modelUnitOf(intended: IntendedUnit, image: Int32Array, model: Un
 /** Compares the arrangement of an intended unit with the model's under a mapping (intended node to model node, -1 unmapped). */
 export function arrangementOf(intended: IntendedUnit, image: Int32Array, model: UnitTable): Arrangement {
   const at = modelUnitOf(intended, image, model);
+  if (intended.kind === 'centre' && model.free.has(image[intended.ends[0]!]!)) return Arrangement.same;
   if (at === -1) return Arrangement.missing;
   const found = model.units[at]!;
   if (found.unit.sense === 0) return found.unit.state === 'flat' ? Arrangement.flat : Arrangement.missing;
@@ -104,10 +105,10 @@ function matchLigands(
     } else taken |= 1 << place;
     out[i] = place;
   }
-  if (open !== -1) {
-    for (let j = 0; j < n; j++) if ((taken & (1 << j)) === 0) out[open] = j;
-  }
-  return true;
+  if (open === -1) return true;
+  for (let j = 0; j < n; j++) if ((taken & (1 << j)) === 0) out[open] = j;
+  // An intended atom that the model lacks leaves the unit outside the mapped part, unless an attachment stands in its place.
+  return intended[open]! < 0 || found[out[open]!] === OUTSIDE_NODE;
 }
 
 const places: number[] = [0, 0, 0, 0];

@@ -1,4 +1,4 @@
-import fc from 'fast-check';
+import * as fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { buildMolecule, type BondOrder } from '../../../core/chemistry/molecule.ts';
 import { type Fragment, fragmentsOf } from '../../../core/comparison/fragment.ts';

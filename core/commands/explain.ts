@@ -1,0 +1,264 @@
+/** `deasil explain`: how the ligands of one unit were ranked, sphere by sphere, and the rule that decided each step. */
+import { elementSymbol } from '../chemistry/elements.ts';
+import { atomLabel, IMPLICIT_HYDROGEN, LONE_PAIR, type Molecule } from '../chemistry/molecule.ts';
+import type { Docket, Ladder, LadderNode, LadderStep, LabelledUnit } from '../docket.ts';
+import { examine, explainUnit } from '../examine.ts';
+import { DEFAULT_LIMITS, type Entry } from '../formats/format.ts';
+import { figure } from '../record/text.ts';
+import {
+  flag,
+  number,
+  type OptionSpec,
+  parseArguments,
+  SETTING_HELP,
+  SETTING_OPTIONS,
+  settingsOf,
+  text,
+} from './arguments.ts';
+import { type CommandIo, ExitStatus, UsageError } from './io.ts';
+import { openInput } from './reading.ts';
+
+const OPTIONS = {
+  unit: { type: 'string' },
+  entry: { type: 'string' },
+  json: { type: 'boolean' },
+  ...SETTING_OPTIONS,
+} as const satisfies Record<string, OptionSpec>;
+
+export const EXPLAIN_HELP = `deasil explain FILE --unit ATOM [options]
+
+Shows the ladder of one stereogenic unit: which sets were compared in which sphere, the first difference, the rule.
+
+  --unit ATOM         an atom of the unit: its label in the file (C7, CA) or its number; two joined by a
+                      hyphen (C3-C4) for a unit that spans two
+  --entry N           the entry of the file (1)
+  --json              the ladder as one JSON object
+${SETTING_HELP}
+
+A computed descriptor says what the coordinates show; it is no proof of absolute configuration.
+`;
+
+/** What each rule compares (IUPAC 2013 Recommendations, P-92; Rule 6: J. Chem. Inf. Model. 2018, 58, 1755). */
+const RULES = {
+  '1a': 'higher atomic number precedes lower',
+  '1b': 'a duplicate whose original is nearer the root precedes',
+  '2': 'higher mass precedes lower',
+  '3': 'Z precedes E',
+  '4a': 'chiral precedes pseudoasymmetric precedes nonstereogenic',
+  '4b': 'like descriptor pairs precede unlike',
+  '4c': 'r precedes s, m precedes p',
+  '5': 'R precedes S, M precedes P',
+  '6': 'the reference duplicate precedes',
+} as const;
+
+/** Runs the command. @throws UsageError for bad arguments, an entry or a unit that is not there. */
+export async function run(args: readonly string[], io: CommandIo): Promise<number> {
+  if (args.includes('--help') || args.includes('-h')) {
+    await io.out(EXPLAIN_HELP);
+    return ExitStatus.agree;
+  }
+  const parsed = parseArguments(args, OPTIONS);
+  const [file, ...more] = parsed.positionals;
+  if (file === undefined) throw new UsageError('no FILE given; - reads standard input');
+  if (more.length > 0)
+    throw new UsageError(`one FILE is explained at a time; ${more.join(' ')} is left over`);
+  const wanted = text(parsed, 'unit');
+  if (wanted === null) throw new UsageError('no unit named; give --unit ATOM');
+  const entryNumber = number(parsed, 'entry', { least: 1, most: Number.MAX_SAFE_INTEGER, whole: true }) ?? 1;
+  const settings = settingsOf(parsed);
+  const entry = await findEntry(io, file, entryNumber);
+  const { molecule } = entry;
+  if (entry.error || !molecule) {
+    const at = entry.error?.line ?? entry.line;
+    throw new UsageError(
+      `${file}, entry ${entryNumber}, line ${at}: ${entry.error?.message ?? 'no structure'}`,
+    );
+  }
+  const docket = examine(molecule, settings);
+  const index = findUnit(molecule, docket, wanted);
+  const labelled = docket.units[index]!;
+  const ladder = explainUnit(molecule, docket, index, settings);
+  if (flag(parsed, 'json')) {
+    await io.out(`${JSON.stringify(ladderRecord(file, entry, molecule, labelled, ladder))}\n`);
+  } else {
+    await io.out(ladderText(file, entry, molecule, labelled, ladder));
+  }
+  return ExitStatus.agree;
+}
+
+async function findEntry(io: CommandIo, file: string, wanted: number): Promise<Entry> {
+  let opened: Awaited<ReturnType<typeof openInput>>;
+  try {
+    opened = await openInput(io, file, DEFAULT_LIMITS);
+  } catch (error) {
+    throw new UsageError(error instanceof Error ? error.message : String(error));
+  }
+  let count = 0;
+  for await (const raw of opened.entries) {
+    // A file of one raw entry may hold several models, so that only reading tells their numbers.
+    if (raw.entry > wanted) break;
+    for (const entry of opened.format.parse(raw, DEFAULT_LIMITS)) {
+      count = Math.max(count, entry.entry);
+      if (entry.entry === wanted) return entry;
+    }
+  }
+  throw new UsageError(`${file}: there is no entry ${wanted}; the last is ${count}`);
+}
+
+function labelOf(molecule: Molecule, ligand: number): string {
+  if (ligand === IMPLICIT_HYDROGEN) return 'H';
+  if (ligand === LONE_PAIR) return 'lone pair';
+  return atomLabel(molecule, ligand, elementSymbol);
+}
+
+/** The unit named by an atom of it, or by two. @throws UsageError that lists the units there are. */
+function findUnit(molecule: Molecule, docket: Docket, wanted: string): number {
+  const names = (atom: number): string[] => {
+    const symbol = elementSymbol(molecule.elements[atom]!);
+    const residue = molecule.residues?.[atom];
+    const all = [labelOf(molecule, atom), String(atom + 1), `${symbol}${atom + 1}`];
+    if (residue) all.push(`${residue.chain}/${residue.residue}/${residue.number}/${residue.atomName}`);
+    return all;
+  };
+  const matches: number[] = [];
+  docket.units.forEach(({ unit }, u) => {
+    const single = unit.atoms.some(atom => names(atom).includes(wanted));
+    const [first, second] = unit.atoms;
+    const pair =
+      first !== undefined &&
+      second !== undefined &&
+      names(first).some(a => names(second).some(b => wanted === `${a}-${b}` || wanted === `${b}-${a}`));
+    if (single || pair) matches.push(u);
+  });
+  const own = matches.filter(u => docket.units[u]!.unit.atoms.length === 1);
+  const only = matches.length === 1 ? matches[0] : own.length === 1 ? own[0] : undefined;
+  if (only !== undefined) return only;
+  const said = (list: readonly number[]): string =>
+    list.map(u => docket.units[u]!.unit.atoms.map(atom => labelOf(molecule, atom)).join('-')).join(', ');
+  if (matches.length > 1)
+    throw new UsageError(`--unit ${wanted}: several units have this atom: ${said(matches)}`);
+  const all = docket.units.map((_, u) => u);
+  throw new UsageError(
+    `--unit ${wanted}: no stereogenic unit there; ${all.length > 0 ? `the units are ${said(all)}` : 'the entry has none'}`,
+  );
+}
+
+function nodeText(node: LadderNode): string {
+  return node.text;
+}
+
+function setText(set: readonly LadderNode[], at: number | null): string {
+  return `{${set.map((node, n) => (n === at ? `*${nodeText(node)}*` : nodeText(node))).join(', ')}}`;
+}
+
+function stepLines(molecule: Molecule, step: LadderStep): string[] {
+  const above = labelOf(molecule, step.above);
+  const below = labelOf(molecule, step.below);
+  const lines = [
+    step.rule === null ? `${above} and ${below} are not told apart` : `${above} before ${below}`,
+  ];
+  if (step.rule !== null) lines.push(`    Rule ${step.rule}: ${RULES[step.rule]}`);
+  const width = Math.max(above.length, below.length);
+  for (const { sphere, above: higher, below: lower, difference } of step.spheres) {
+    const row = (sets: readonly (readonly LadderNode[])[]): string =>
+      sets.map((set, s) => setText(set, difference?.set === s ? difference.place : null)).join(' ');
+    const mark = difference ? '  differs' : '';
+    lines.push(`    sphere ${sphere}  ${above.padEnd(width)}  ${row(higher)}`);
+    lines.push(`    ${' '.repeat(`sphere ${sphere}`.length)}  ${below.padEnd(width)}  ${row(lower)}${mark}`);
+  }
+  lines.push(`    ${step.summary}`);
+  return lines;
+}
+
+function ladderText(
+  file: string,
+  entry: Entry,
+  molecule: Molecule,
+  labelled: LabelledUnit,
+  ladder: Ladder,
+): string {
+  const { unit } = labelled;
+  const name = unit.atoms.map(atom => labelOf(molecule, atom)).join('-');
+  const title = [file, String(entry.entry), entry.name].filter(part => part !== '').join('  ');
+  const measures: string[] = [];
+  if (labelled.signedVolume !== null) measures.push(`signed volume ${figure(labelled.signedVolume, 2)} Å³`);
+  if (labelled.torsion !== null) measures.push(`torsion ${figure(labelled.torsion, 1)}°`);
+  if (unit.firmness !== null) measures.push(`firmness ${figure(unit.firmness, 2)}`);
+  const letter = labelled.descriptor ?? (unit.state === 'clear' ? 'no descriptor' : unit.state);
+  const lines = [title, [`${name}, ${unit.kind}: ${letter}`, ...measures].join(', ')];
+  const ends: (1 | 2 | null)[] = unit.ends.length > 1 ? [1, 2] : [null];
+  for (const end of ends) {
+    const ranked = labelled.ranking.filter(each => each.end === end);
+    const order = [...ranked]
+      .sort((a, b) => a.rank - b.rank)
+      .map(each => `${each.rank} ${labelOf(molecule, each.ligand)}`);
+    const where = end === null ? '' : ` at ${labelOf(molecule, unit.ends[end - 1]!.atom)}`;
+    if (order.length > 0) lines.push(`ranking${where}: ${order.join(', ')}`);
+    for (const step of ladder.steps.filter(each => each.end === end)) {
+      lines.push(...stepLines(molecule, step).map(line => `  ${line}`));
+    }
+  }
+  if (ladder.auxiliary.length > 0) {
+    const said = ladder.auxiliary.map(
+      ({ atoms, descriptor }) => `${atoms.map(atom => labelOf(molecule, atom)).join('-')} ${descriptor}`,
+    );
+    lines.push(`auxiliary descriptors: ${said.join(', ')}`);
+  }
+  lines.push(`(X): duplicate atom; ${ladder.nodes} nodes in the digraph`);
+  for (const warning of [...unit.warnings, ...labelled.warnings]) lines.push(warning);
+  return `${lines.join('\n')}\n`;
+}
+
+/** The ladder with 1-based atoms, for programs. */
+function ladderRecord(
+  file: string,
+  entry: Entry,
+  molecule: Molecule,
+  labelled: LabelledUnit,
+  ladder: Ladder,
+): object {
+  const ligand = (at: number): object => ({
+    atom: at >= 0 ? at + 1 : null,
+    ...(at === IMPLICIT_HYDROGEN && { implicit: 'H' }),
+    ...(at === LONE_PAIR && { implicit: 'lone-pair' }),
+    label: labelOf(molecule, at),
+  });
+  const nodes = (sets: readonly (readonly LadderNode[])[]): object =>
+    sets.map(set => set.map(node => ({ ...ligand(node.atom), nature: node.nature, text: node.text })));
+  return {
+    file,
+    entry: entry.entry,
+    name: entry.name,
+    kind: labelled.unit.kind,
+    atoms: labelled.unit.atoms.map(atom => atom + 1),
+    labels: labelled.unit.atoms.map(atom => labelOf(molecule, atom)),
+    descriptor: labelled.descriptor,
+    state: labelled.unit.state,
+    ranking: labelled.ranking.map(({ ligand: at, rank, decidedBy, sphere, end }) => ({
+      ...ligand(at),
+      rank,
+      decidedBy,
+      sphere,
+      end,
+    })),
+    steps: ladder.steps.map(({ above, below, end, rule, sphere, spheres, summary }) => ({
+      above: ligand(above),
+      below: ligand(below),
+      end,
+      rule,
+      sphere,
+      summary,
+      spheres: spheres.map(each => ({
+        sphere: each.sphere,
+        above: nodes(each.above),
+        below: nodes(each.below),
+        difference: each.difference,
+      })),
+    })),
+    auxiliary: ladder.auxiliary.map(({ atoms, descriptor }) => ({
+      atoms: atoms.map(atom => atom + 1),
+      descriptor,
+    })),
+    nodes: ladder.nodes,
+  };
+}
