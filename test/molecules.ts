@@ -88,7 +88,12 @@ function movedStereo(stereo: StatedStereo, move: (ligand: number) => number): St
   }
 }
 
-const four = (list: readonly number[]): [number, number, number, number] => [list[0]!, list[1]!, list[2]!, list[3]!];
+const four = (list: readonly number[]): [number, number, number, number] => [
+  list[0]!,
+  list[1]!,
+  list[2]!,
+  list[3]!,
+];
 const two = (list: readonly number[]): [number, number] => [list[0]!, list[1]!];
 
 /** The mirror image: coordinates reflected in the plane z = 0, every stated turn reversed. */
@@ -183,7 +188,11 @@ function moleculeFrom(random: () => number, size: number, rings: number): Molecu
       bond[2] = 2;
     }
   }
-  const inputs: AtomInput[] = atoms.map(({ element, free, isotope }) => ({ element, isotope, hydrogens: free }));
+  const inputs: AtomInput[] = atoms.map(({ element, free, isotope }) => ({
+    element,
+    isotope,
+    hydrogens: free,
+  }));
   const plain = buildMolecule({ atoms: inputs, bonds });
   const stated: StatedStereo[] = [];
   for (let i = 0; i < plain.atomCount; i++) {

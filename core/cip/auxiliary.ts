@@ -64,7 +64,8 @@ export function labelAuxiliary(
       // Units of one sphere are labelled without regard to each other, then all at once.
       for (; done < found.length; done++) {
         const descriptor = found[done]!;
-        const planar = table.units[descriptor.unit]!.kind === 'double-bond' || table.units[descriptor.unit]!.planar;
+        const planar =
+          table.units[descriptor.unit]!.kind === 'double-bond' || table.units[descriptor.unit]!.planar;
         if (planar) digraph.auxiliaryBond[descriptor.node] = descriptor.letter;
         else digraph.auxiliary[descriptor.node] = descriptor.letter;
       }
@@ -73,7 +74,13 @@ export function labelAuxiliary(
   return found;
 }
 
-function findPlaces(view: Branches, ligand: number, table: UnitTable, ownUnit: number, places: Place[]): void {
+function findPlaces(
+  view: Branches,
+  ligand: number,
+  table: UnitTable,
+  ownUnit: number,
+  places: Place[],
+): void {
   const { digraph } = view;
   const stack = [ligand];
   while (stack.length > 0) {
@@ -116,7 +123,8 @@ function letterAt(scratch: Branches, place: Place, table: UnitTable): Letter {
     return ranking ? centreLetter(sense, [ranking]) : Letter.none;
   }
   const nearAtom = digraph.atom[place.node]!;
-  const [near, far] = unit.ends[0]!.atom === nearAtom ? [unit.ends[0]!, unit.ends[1]!] : [unit.ends[1]!, unit.ends[0]!];
+  const [near, far] =
+    unit.ends[0]!.atom === nearAtom ? [unit.ends[0]!, unit.ends[1]!] : [unit.ends[1]!, unit.ends[0]!];
   const nearRanking = rankEnd(scratch, place.node, near);
   if (!nearRanking) return Letter.none;
   const farRanking = rankEnd(scratch, place.far, far);

@@ -58,7 +58,9 @@ export class Branches {
   /** Compares what two branches hold in sphere `sphere`; positive when the first precedes. Both have been arranged to that sphere. */
   compare(first: number, second: number, depth: number, sphere: number, rule: NodeRule): number {
     if (depth === sphere) {
-      return rule.key(this.digraph, first, depth, this.root) - rule.key(this.digraph, second, depth, this.root);
+      return (
+        rule.key(this.digraph, first, depth, this.root) - rule.key(this.digraph, second, depth, this.root)
+      );
     }
     const sizeA = this.sizeOf(first);
     const sizeB = this.sizeOf(second);

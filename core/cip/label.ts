@@ -97,7 +97,8 @@ export class Labeller {
     this.table.sense[index] = own;
     const stereogenic = outcomes.find(o => o !== null);
     if (stereogenic === undefined) return null;
-    if (outcomes.every(o => o !== null && o.letter === stereogenic!.letter)) return labelled(unit, stereogenic!, []);
+    if (outcomes.every(o => o !== null && o.letter === stereogenic!.letter))
+      return labelled(unit, stereogenic!, []);
     return {
       ...withoutLetter(unit, [
         'no descriptor: the ranking depends on another unit whose configuration is not decided',
@@ -171,7 +172,8 @@ export class Labeller {
 
   private ligandOfRoot(ligand: number): number {
     const node = this.digraph.ligandNode(0, ligand);
-    if (node < 0) throw new RangeError(`ligand ${ligand + 1} is not a neighbour of the atom it is said to be on`);
+    if (node < 0)
+      throw new RangeError(`ligand ${ligand + 1} is not a neighbour of the atom it is said to be on`);
     return node;
   }
 

@@ -86,7 +86,15 @@ function stepOf(
   const rule = ranking.rules[place]!;
   const sphere = ranking.spheres[place]!;
   if (rule === null || sphere === null) {
-    return { above, below, end, rule: null, sphere: null, spheres: [], summary: 'No rule tells these two apart.' };
+    return {
+      above,
+      below,
+      end,
+      rule: null,
+      sphere: null,
+      spheres: [],
+      summary: 'No rule tells these two apart.',
+    };
   }
   const nodeAbove = ligands[upper]!;
   const nodeBelow = ligands[lower]!;

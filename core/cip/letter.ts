@@ -18,7 +18,21 @@ export const Letter = {
 } as const;
 export type Letter = (typeof Letter)[keyof typeof Letter];
 
-const NAMES: readonly (Descriptor | null)[] = [null, 'R', 'S', 'r', 's', 'M', 'P', 'm', 'p', 'E', 'Z', 'e', 'z'];
+const NAMES: readonly (Descriptor | null)[] = [
+  null,
+  'R',
+  'S',
+  'r',
+  's',
+  'M',
+  'P',
+  'm',
+  'p',
+  'E',
+  'Z',
+  'e',
+  'z',
+];
 
 /** The descriptor a letter stands for; null for none. */
 export function descriptorOf(letter: number): Descriptor | null {

@@ -17,8 +17,16 @@ export interface MancudeDuplicates {
 
 /** Finds the bonds whose double bond can move, and the averaged atomic numbers. `duplicates` as in `RankingGraph`. */
 export function mancudeDuplicates(molecule: Molecule, duplicates: Uint8Array): MancudeDuplicates {
-  const { atomCount, bondCount, bondAtoms, bondOrders, neighbourStart, neighbours, neighbourBonds, elements } =
-    molecule;
+  const {
+    atomCount,
+    bondCount,
+    bondAtoms,
+    bondOrders,
+    neighbourStart,
+    neighbours,
+    neighbourBonds,
+    elements,
+  } = molecule;
   const mancudeBond = new Uint8Array(bondCount);
   const mancudeNumber = new Float64Array(atomCount);
   // partner[a]: the atom to which a has its one double bond.

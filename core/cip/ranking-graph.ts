@@ -67,7 +67,11 @@ export function rankingGraph(molecule: Molecule): RankingGraph {
     // P=O, S=O, P=S, S=N and their like: contributions of d orbitals are neglected (design.md).
     if (order === 2 && (isHypervalent(molecule, first) || isHypervalent(molecule, second))) continue;
     // Nitrogen has no fifth bond: of two double bonds drawn at one N, the second stands for N⁺–O⁻.
-    const crowded = fiveBondedNitrogen(molecule, first) ? first : fiveBondedNitrogen(molecule, second) ? second : -1;
+    const crowded = fiveBondedNitrogen(molecule, first)
+      ? first
+      : fiveBondedNitrogen(molecule, second)
+        ? second
+        : -1;
     if (crowded >= 0 && order === 2) {
       if (pentavalent[crowded] === 1) continue;
       pentavalent[crowded] = 1;

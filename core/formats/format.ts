@@ -46,7 +46,11 @@ export interface Limits {
   readonly entryBytes: number;
 }
 
-export const DEFAULT_LIMITS: Limits = { lineLength: 1_000_000, atoms: 1_000_000, entryBytes: 256 * 1024 * 1024 };
+export const DEFAULT_LIMITS: Limits = {
+  lineLength: 1_000_000,
+  atoms: 1_000_000,
+  entryBytes: 256 * 1024 * 1024,
+};
 
 export interface Format {
   /** "SDF", "SMILES": the name shown to people. */

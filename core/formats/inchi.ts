@@ -206,7 +206,7 @@ function readLayers(identifier: string): Layers {
     if (letter === 'f' || letter === 'r') break;
     if (letter === 'i') isotopic = true;
     if (letter === 'm') {
-      [...body].forEach((digit, c) => {
+      Array.from(body).forEach((digit, c) => {
         const component = components[c];
         if (component) component.inverted = digit === '1';
       });
@@ -307,7 +307,7 @@ function assignOrders(
       charges[atom] = 1;
       return [0];
     }
-    if ((z === 8 || z === 16) && used === 3 && !(z === 16 && degree[atom]! === 3 && hydrogens[atom] === 0)) {
+    if ((z === 8 || z === 16) && used === 3 && !(z === 16 && degree[atom] === 3 && hydrogens[atom] === 0)) {
       charges[atom] = 1;
       return [0];
     }
@@ -329,6 +329,8 @@ function assignOrders(
   });
   const extra = new Int32Array(bonds.length);
   const load = new Int32Array(n);
+  const valenceOf = (atom: number): number =>
+    degree[atom]! + hydrogens[atom]! + negative[atom]! + load[atom]!;
   let steps = 0;
   const order = Array.from({ length: n }, (_, atom) => atom).sort(
     (a, b) => choices[a]!.length - choices[b]!.length || around[a]!.length - around[b]!.length,
@@ -355,7 +357,7 @@ function assignOrders(
     if (tightest === -1) {
       let positives = 0;
       for (let atom = 0; atom < n; atom++) {
-        if (chargeable[atom] && degree[atom]! + hydrogens[atom]! + load[atom]! === 4) positives++;
+        if (chargeable[atom] && valenceOf(atom) === 4) positives++;
       }
       return ionic || positives <= component.positives;
     }
@@ -374,10 +376,10 @@ function assignOrders(
   };
   if (!search()) return null;
   for (let atom = 0; atom < n; atom++) {
-    if (chargeable[atom] && degree[atom]! + hydrogens[atom]! + load[atom]! === 4) charges[atom] = 1;
+    if (chargeable[atom] && valenceOf(atom) === 4) charges[atom] = 1;
   }
   for (let atom = 0; atom < n; atom++) {
-    const used = degree[atom]! + hydrogens[atom]! + negative[atom]! + load[atom]!;
+    const used = valenceOf(atom);
     if (ionic && (elements[atom] === 8 || elements[atom] === 16) && used === 1) charges[atom] = -1;
   }
   return { orders: Array.from(extra, each => (each + 1) as BondOrder), charges };
@@ -426,11 +428,11 @@ function resolveBonding(component: Component): {
     // Charged and odd species: connections and hydrogens hold, the orders stay single.
     return {
       hydrogens,
-      orders: component.bonds.map(() => 1 as BondOrder),
+      orders: component.bonds.map(() => 1),
       charges: new Int8Array(component.elements.length),
     };
   }
-  return { hydrogens, ...(result as { orders: BondOrder[]; charges: Int8Array }) };
+  return { hydrogens, ...result };
 }
 
 function neighboursIn(component: Component, atom: number): number[] {

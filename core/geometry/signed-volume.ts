@@ -27,9 +27,7 @@ export function tripleProduct(r: Float64Array, o: number, a: number, b: number, 
  */
 export function signedVolume(r: Float64Array, centre: number, ligands: readonly number[]): number {
   const [a, b, c, d] = ligands;
-  return d === undefined
-    ? tripleProduct(r, centre, a!, b!, c!)
-    : tripleProduct(r, d, a!, b!, c!) / 4;
+  return d === undefined ? tripleProduct(r, centre, a!, b!, c!) : tripleProduct(r, d, a!, b!, c!) / 4;
 }
 
 /** The same on unit bond vectors, over its value at ideal tetrahedral angles: signed, ±1 for an ideal centre, 0 when flat. Not capped. */

@@ -30,7 +30,10 @@ export function torsion(r: Float64Array, a: number, b: number, c: number, d: num
 const STEP = 1e-4;
 
 /** Gradient of a torsion, degrees per Å, three components for each of the four atoms (central differences). */
-export function torsionGradient(r: Float64Array, atoms: readonly [number, number, number, number]): Float64Array {
+export function torsionGradient(
+  r: Float64Array,
+  atoms: readonly [number, number, number, number],
+): Float64Array {
   const four = new Float64Array(12);
   atoms.forEach((atom, k) => {
     for (let x = 0; x < 3; x++) four[3 * k + x] = r[3 * atom + x]!;

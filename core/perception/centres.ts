@@ -136,7 +136,10 @@ function twoAcidTerminals(molecule: Molecule, ligands: readonly Ligand[]): boole
 /** Amine oxide drawn with a double bond: R3N=O. */
 function isOxide(molecule: Molecule, atom: number): boolean {
   for (let k = molecule.neighbourStart[atom]!; k < molecule.neighbourStart[atom + 1]!; k++) {
-    if (molecule.bondOrders[molecule.neighbourBonds[k]!] === 2 && molecule.elements[molecule.neighbours[k]!] !== 8) {
+    if (
+      molecule.bondOrders[molecule.neighbourBonds[k]!] === 2 &&
+      molecule.elements[molecule.neighbours[k]!] !== 8
+    ) {
       return false;
     }
   }
@@ -231,7 +234,8 @@ function wrongSide(r: Float64Array, atom: number, used: readonly number[], hydro
   const nx = d(b, a, 1) * d(c, a, 2) - d(b, a, 2) * d(c, a, 1);
   const ny = d(b, a, 2) * d(c, a, 0) - d(b, a, 0) * d(c, a, 2);
   const nz = d(b, a, 0) * d(c, a, 1) - d(b, a, 1) * d(c, a, 0);
-  const along = (to: number, from: number): number => nx * d(to, from, 0) + ny * d(to, from, 1) + nz * d(to, from, 2);
+  const along = (to: number, from: number): number =>
+    nx * d(to, from, 0) + ny * d(to, from, 1) + nz * d(to, from, 2);
   return along(hydrogen, atom) * along(atom, a) < 0;
 }
 

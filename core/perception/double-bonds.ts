@@ -4,12 +4,7 @@
  * C=C, C=N, N=N and their like, a lone pair being a ligand of nitrogen (P-93.4.2.1); rows of cumulated double bonds,
  * axial where their number is even, planar where it is odd (P-93.4.2).
  */
-import {
-  IMPLICIT_HYDROGEN,
-  isLocated,
-  LONE_PAIR,
-  type Molecule,
-} from '../chemistry/molecule.ts';
+import { IMPLICIT_HYDROGEN, isLocated, LONE_PAIR, type Molecule } from '../chemistry/molecule.ts';
 import { torsion, torsionGradient } from '../geometry/torsion.ts';
 import { propagated } from '../geometry/signed-volume.ts';
 import { doubleBondsAt, isPlainHydrogen, type PerceptionContext } from './context.ts';
@@ -72,7 +67,8 @@ function row(molecule: Molecule, end: number, next: number): number[] {
     let following = -1;
     for (let k = molecule.neighbourStart[at]!; k < molecule.neighbourStart[at + 1]!; k++) {
       const neighbour = molecule.neighbours[k]!;
-      if (neighbour !== before && molecule.bondOrders[molecule.neighbourBonds[k]!] === 2) following = neighbour;
+      if (neighbour !== before && molecule.bondOrders[molecule.neighbourBonds[k]!] === 2)
+        following = neighbour;
     }
     if (following < 0 || path.includes(following)) return path;
     path.push(following);
@@ -162,13 +158,17 @@ function labileReason(
     if (molecule.elements[carbon] !== 6 || molecule.elements[nitrogen] !== 7) continue;
     const bearsHydrogen =
       molecule.hydrogens[nitrogen]! > 0 ||
-      [...molecule.neighbours.subarray(molecule.neighbourStart[nitrogen]!, molecule.neighbourStart[nitrogen + 1]!)].some(
-        neighbour => molecule.elements[neighbour] === 1,
-      );
+      [
+        ...molecule.neighbours.subarray(
+          molecule.neighbourStart[nitrogen]!,
+          molecule.neighbourStart[nitrogen + 1]!,
+        ),
+      ].some(neighbour => molecule.elements[neighbour] === 1);
     if (!bearsHydrogen) continue;
     for (let k = molecule.neighbourStart[carbon]!; k < molecule.neighbourStart[carbon + 1]!; k++) {
       const other = molecule.neighbours[k]!;
-      if (other !== nitrogen && molecule.elements[other] === 7) return 'an N–H amidine exchanges its hydrogen';
+      if (other !== nitrogen && molecule.elements[other] === 7)
+        return 'an N–H amidine exchanges its hydrogen';
     }
   }
   return null;

@@ -24,8 +24,7 @@ export function perceiveUnits(molecule: Molecule, settings: Settings): Perceived
   const context = perceptionContext(molecule, settings);
   const candidates: Candidate[] = [
     ...centreCandidates(context).map(
-      centre =>
-        ({ kind: 'centre', centre, ends: [{ atom: centre.atom, ligands: centre.ligands }] }) as const,
+      centre => ({ kind: 'centre', centre, ends: [{ atom: centre.atom, ligands: centre.ligands }] }) as const,
     ),
     ...doubleBondCandidates(context).map(
       bond =>

@@ -18,7 +18,9 @@ export function prune<T extends Prunable>(context: PerceptionContext, candidates
   for (;;) {
     const holders = new Int32Array(context.molecule.atomCount);
     for (const candidate of kept) for (const end of candidate.ends) holders[end.atom]!++;
-    const next = kept.filter(candidate => candidate.ends.every(end => maySeparate(context, candidate, end, holders)));
+    const next = kept.filter(candidate =>
+      candidate.ends.every(end => maySeparate(context, candidate, end, holders)),
+    );
     if (next.length === kept.length) return next;
     kept = next;
   }

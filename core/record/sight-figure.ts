@@ -90,7 +90,8 @@ export function sightFigure(
   const middle = size / 2;
   const own = new Set<number>(labelled.unit.atoms);
   const ligands = new Set<number>();
-  for (const end of labelled.unit.ends) for (const ligand of end.ligands) if (ligand >= 0) ligands.add(ligand);
+  for (const end of labelled.unit.ends)
+    for (const ligand of end.ligands) if (ligand >= 0) ligands.add(ligand);
   const places = dialPlaces(molecule, labelled, frame);
   const points: (readonly [number, number, number] | null)[] = [];
   for (let i = 0; i < molecule.atomCount; i++) {
@@ -143,7 +144,10 @@ export function sightFigure(
   if (options.source !== undefined) lines.push(options.source);
   const height = size + 18 * lines.length + 14;
   const text = lines
-    .map((line, i) => `<text x="12" y="${size + 18 * (i + 1)}" font-size="13" fill="${INK}">${escapeXml(line)}</text>`)
+    .map(
+      (line, i) =>
+        `<text x="12" y="${size + 18 * (i + 1)}" font-size="13" fill="${INK}">${escapeXml(line)}</text>`,
+    )
     .join('');
   const paper = options.paper === false ? '' : `<rect width="${size}" height="${height}" fill="${PAPER}"/>`;
   return `<svg xmlns="http://www.w3.org/2000/svg" width="${size}" height="${height}" viewBox="0 0 ${size} ${height}" font-family="Source Sans 3, Noto Sans, DejaVu Sans, sans-serif" role="img" aria-label="${escapeXml(caption)}">${paper}${shown.map(d => d.svg).join('')}${dial(labelled, places, middle, scale)}${text}</svg>\n`;
@@ -176,7 +180,8 @@ function dial(labelled: LabelledUnit, places: readonly DialPlace[], middle: numb
       `<text x="${px(middle + distance * Math.cos(angle))}" y="${px(middle - distance * Math.sin(angle))}" font-size="20" font-weight="600" text-anchor="middle" dominant-baseline="central" fill="${decided ? colour : INK}">${name}</text>`,
     );
   }
-  const sweep = decided && unit.kind === 'centre' && angles.length === 3 ? sweepArc(angles, middle, radius, colour) : '';
+  const sweep =
+    decided && unit.kind === 'centre' && angles.length === 3 ? sweepArc(angles, middle, radius, colour) : '';
   return ring + doubled + sweep + numerals.join('');
 }
 
@@ -190,7 +195,8 @@ function sweepArc(angles: readonly number[], middle: number, radius: number, col
   const counter = turn(a, b) < turn(a, c);
   const whole = counter ? turn(a, c) : -turn(c, a);
   const r = radius - 14;
-  const point = (angle: number): string => `${px(middle + r * Math.cos(angle))} ${px(middle - r * Math.sin(angle))}`;
+  const point = (angle: number): string =>
+    `${px(middle + r * Math.cos(angle))} ${px(middle - r * Math.sin(angle))}`;
   const start = a + 0.14 * Math.sign(whole);
   const end = a + whole - 0.14 * Math.sign(whole);
   const large = Math.abs(end - start) > Math.PI ? 1 : 0;

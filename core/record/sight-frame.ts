@@ -59,7 +59,12 @@ function frameFrom(origin: Vector, toReader: Vector, upwards: Vector | null): Si
 }
 
 /** The direction of a ligand from its atom; an implicit hydrogen or lone pair points away from the located ones. */
-export function ligandDirection(molecule: Molecule, atom: number, ligand: number, all: readonly number[]): Vector | null {
+export function ligandDirection(
+  molecule: Molecule,
+  atom: number,
+  ligand: number,
+  all: readonly number[],
+): Vector | null {
   const r = molecule.coordinates!;
   const centre = at(r, atom);
   if (ligand >= 0) return unit(minus(at(r, ligand), centre));
@@ -96,7 +101,8 @@ export function sightFrame(molecule: Molecule, labelled: LabelledUnit): SightFra
   const middle = times(plus(front, rear), 0.5);
   const along = unit(minus(rear, front)) ?? [0, 0, -1];
   const top = ranked(labelled, 1)[0]?.ligand ?? first.ligands[0];
-  const direction = top === undefined ? null : ligandDirection(molecule, first.atom, top, [...first.ligands, second.atom]);
+  const direction =
+    top === undefined ? null : ligandDirection(molecule, first.atom, top, [...first.ligands, second.atom]);
   if (stereo.kind === 'double-bond' || stereo.planar) {
     const normal = unit(cross(along, direction ?? perpendicular(along))) ?? perpendicular(along);
     return frameFrom(middle, normal, direction);
