@@ -390,7 +390,7 @@ function freeNodes(model: Fragment, units: readonly NodeUnit[], docketIndex: rea
     if (
       model.elements[w] === 6 &&
       model.pi[w] === 0 &&
-      degree + model.hydrogens[w]! === 4 &&
+      4 - degree === model.hydrogens[w] &&
       model.hydrogens[w]! < 2
     ) {
       free.add(w);

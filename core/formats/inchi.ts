@@ -296,8 +296,8 @@ function assignOrders(
   });
   const charges = new Int8Array(n);
   for (let atom = 0; atom < n; atom++) charges[atom] = -negative[atom]!;
-  /** Atoms that a bond more would charge. */
-  const chargeable = new Uint8Array(n);
+  /** Number of bonds and hydrogens at which an atom bears a positive charge; 0 for one that cannot. */
+  const chargedAt = new Uint8Array(n);
   /** Free valences still to be used by π bonds; several values may do. */
   const choices: number[][] = elements.map((z, atom) => {
     const used = degree[atom]! + hydrogens[atom]! + negative[atom]!;
@@ -322,8 +322,12 @@ function assignOrders(
     const free = valences.map(valence => valence - used).filter(rest => rest >= 0);
     if ((z === 8 || z === 16) && used === 1 && ionic) free.push(0);
     if (z === 7 && used <= 3 && (component.positives > 0 || ionic)) {
-      chargeable[atom] = 1;
+      chargedAt[atom] = 4;
       free.push(4 - used);
+    }
+    if ((z === 16 || z === 34) && used === 3 && (component.positives > 0 || ionic)) {
+      chargedAt[atom] = 3;
+      free.push(0);
     }
     return free.length > 0 ? free : [0];
   });
@@ -357,7 +361,7 @@ function assignOrders(
     if (tightest === -1) {
       let positives = 0;
       for (let atom = 0; atom < n; atom++) {
-        if (chargeable[atom] && valenceOf(atom) === 4) positives++;
+        if (chargedAt[atom] !== 0 && valenceOf(atom) === chargedAt[atom]) positives++;
       }
       return ionic || positives <= component.positives;
     }
@@ -376,7 +380,7 @@ function assignOrders(
   };
   if (!search()) return null;
   for (let atom = 0; atom < n; atom++) {
-    if (chargeable[atom] && valenceOf(atom) === 4) charges[atom] = 1;
+    if (chargedAt[atom] !== 0 && valenceOf(atom) === chargedAt[atom]) charges[atom] = 1;
   }
   for (let atom = 0; atom < n; atom++) {
     const used = valenceOf(atom);

@@ -12,7 +12,7 @@ export interface RunResult {
   readonly out: string;
   readonly err: string;
   /** Standard output read as JSON lines. */
-  lines(): EntryRecord[];
+  readonly lines: () => EntryRecord[];
 }
 
 /** A folder of files for one test. */
