@@ -27,7 +27,7 @@ const SOURCES = ['core', 'electron', 'renderer', 'assets', 'build.config.mjs', '
 /** Packages that hold a native binary and so stay outside the bundles. */
 const NATIVE = ['@resvg/resvg-js'];
 
-/** Files of packages that the command reads at run time; they are laid beside its bundle. */
+/** Files of packages that the command may read at run time; they are laid beside its bundle. */
 const COMMAND_ASSETS = ['node_modules/@rdkit/rdkit/dist/RDKit_minimal.wasm', 'node_modules/openchemlib/dist/resources.json'];
 
 /** A lock older than this was left behind by a build that was killed, ms. */
@@ -129,7 +129,11 @@ async function buildCommand(staging, packages) {
   const text = await readFile(entry, 'utf8');
   if (!text.startsWith('#!')) await writeFile(entry, `#!/usr/bin/env node\n${text}`);
   await chmod(entry, 0o755);
-  for (const asset of COMMAND_ASSETS) await copyFile(join(root, asset), join(dir, basename(asset)));
+  const chunks = await Promise.all((await readdir(dir)).map(name => readFile(join(dir, name), 'utf8')));
+  for (const asset of COMMAND_ASSETS) {
+    // Only what the command reads: these are the bulk of its size.
+    if (chunks.some(chunk => chunk.includes(basename(asset)))) await copyFile(join(root, asset), join(dir, basename(asset)));
+  }
   return true;
 }
 
