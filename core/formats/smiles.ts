@@ -351,7 +351,7 @@ function statedStereo(reader: Reader, hydrogens: readonly number[]): StatedStere
       return;
     }
     const turn = atom.chirality === '@@' || atom.chirality.endsWith('2') ? 'clockwise' : 'anticlockwise';
-    if (doubles[i]!.length === 2) {
+    if (doubles[i]!.length === 2 && atom.order.length === 2) {
       const allene = alleneLigands(atoms, doubles, hydrogens, i);
       if (allene === null)
         reader.warnings.push(`column ${atom.column}: chirality on an atom that has none is ignored`);

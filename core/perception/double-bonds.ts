@@ -15,8 +15,9 @@ const SMALLEST_STEREOGENIC_RING = 8;
 /** Mancude rings up to this size (cyclooctatetraene) have no double bond of fixed place. */
 const LARGEST_DELOCALISED_RING = 8;
 
-/** A possible double-bond or cumulene unit before it is measured. */
-export interface DoubleBondCandidate {
+/** A possible unit with two ends (double bond, cumulene, hindered axis) before it is measured. */
+export interface PairCandidate {
+  readonly kind: 'double-bond' | 'cumulene' | 'axis';
   /** End atoms; the ones between them. */
   readonly ends: readonly [number, number];
   readonly between: readonly number[];
@@ -26,9 +27,9 @@ export interface DoubleBondCandidate {
 }
 
 /** Finds the double bonds and cumulenes that can be stereogenic by their own bonding. */
-export function doubleBondCandidates(context: PerceptionContext): DoubleBondCandidate[] {
+export function doubleBondCandidates(context: PerceptionContext): PairCandidate[] {
   const { molecule, rings, movable } = context;
-  const found: DoubleBondCandidate[] = [];
+  const found: PairCandidate[] = [];
   for (let b = 0; b < molecule.bondCount; b++) {
     if (molecule.bondOrders[b] !== 2) continue;
     const first = molecule.bondAtoms[2 * b]!;
@@ -79,7 +80,7 @@ function candidateOf(
   context: PerceptionContext,
   ends: readonly [number, number],
   between: readonly number[],
-): DoubleBondCandidate | null {
+): PairCandidate | null {
   const { molecule } = context;
   const inner = [between[0] ?? ends[1], between[between.length - 1] ?? ends[0]] as const;
   const first = endLigands(molecule, ends[0], inner[0]);
@@ -87,6 +88,7 @@ function candidateOf(
   if (first === null || second === null) return null;
   if (between.length === 0 && isDelocalisedIminium(context, ends)) return null;
   return {
+    kind: between.length === 0 ? 'double-bond' : 'cumulene',
     ends,
     between,
     ligands: [first, second],
@@ -174,8 +176,8 @@ function labileReason(
   return null;
 }
 
-/** Measures a double bond or cumulene in space. */
-export function measureDoubleBond(context: PerceptionContext, candidate: DoubleBondCandidate): StereoUnit {
+/** Measures a unit with two ends in space by its torsion. */
+export function measurePair(context: PerceptionContext, candidate: PairCandidate): StereoUnit {
   const { molecule, settings } = context;
   const r = context.space!;
   const [first, second] = candidate.ends;
@@ -203,7 +205,7 @@ export function measureDoubleBond(context: PerceptionContext, candidate: DoubleB
 /** A located ligand at each end, and the half turn by which its torsion differs from that of the first-listed ligands. */
 function endsLocated(
   molecule: Molecule,
-  candidate: DoubleBondCandidate,
+  candidate: PairCandidate,
 ): { reference: readonly [number, number]; shift: 0 | 180 } | null {
   let turns = 0;
   const reference: number[] = [];
@@ -219,7 +221,7 @@ function endsLocated(
 }
 
 /** The torsion averaged over all pairs of located ligands, those of second rank turned by half a turn. */
-function meanTorsion(r: Float64Array, candidate: DoubleBondCandidate, raw: number, shift: number): number {
+function meanTorsion(r: Float64Array, candidate: PairCandidate, raw: number, shift: number): number {
   const [first, second] = candidate.ends;
   let sine = 0;
   let cosine = 0;
@@ -237,7 +239,7 @@ function meanTorsion(r: Float64Array, candidate: DoubleBondCandidate, raw: numbe
 }
 
 function unitOf(
-  candidate: DoubleBondCandidate,
+  candidate: PairCandidate,
   state: UnitState,
   sense: 1 | -1 | 0,
   firmness: number | null,
@@ -245,13 +247,13 @@ function unitOf(
   sigma: number | null,
 ): StereoUnit {
   return {
-    kind: candidate.between.length === 0 ? 'double-bond' : 'cumulene',
+    kind: candidate.kind,
     atoms: candidate.ends,
     ends: [
       { atom: candidate.ends[0], ligands: candidate.ligands[0] },
       { atom: candidate.ends[1], ligands: candidate.ligands[1] },
     ],
-    planar: candidate.between.length > 0 && candidate.planar,
+    planar: candidate.kind === 'cumulene' && candidate.planar,
     state,
     sense,
     basis: 'coordinates',

@@ -1,55 +1,57 @@
 /** Perception: every atom, bond and row of bonds that may be a stereogenic unit, measured from what the molecule offers. */
 import type { Molecule } from '../chemistry/molecule.ts';
 import type { Settings } from '../docket.ts';
+import { axisCandidates } from './axes.ts';
 import { type CentreCandidate, centreCandidates, measureCentre } from './centres.ts';
 import { type PerceptionContext, perceptionContext } from './context.ts';
-import { type DoubleBondCandidate, doubleBondCandidates, measureDoubleBond } from './double-bonds.ts';
+import { doubleBondCandidates, measurePair, type PairCandidate } from './double-bonds.ts';
+import { drawnCentre, drawnPair } from './drawing.ts';
+import { helixCandidates, measureHelix } from './helices.ts';
 import { prune } from './pruning.ts';
-import { type StatedTable, statedCentre, statedDoubleBond, statedTable } from './stated.ts';
+import { type StatedTable, statedCentre, statedPair, statedTable } from './stated.ts';
 import type { StereoUnit, UnitEnd } from './unit.ts';
 
 export interface Perceived {
-  /** Candidates in order of kind, then of their lowest atom; the ranking decides which are stereogenic. */
+  /** Candidates in order of kind, then of their place in the molecule; the ranking decides which are stereogenic. */
   readonly units: StereoUnit[];
   readonly warnings: string[];
 }
 
 type Candidate = { readonly ends: readonly UnitEnd[] } & (
   | { readonly kind: 'centre'; readonly centre: CentreCandidate }
-  | { readonly kind: 'double-bond'; readonly bond: DoubleBondCandidate }
+  | { readonly kind: 'pair'; readonly pair: PairCandidate }
 );
 
 /** Finds and measures the candidate units of a molecule: from coordinates in space, else from the drawing, else from the notation. */
 export function perceiveUnits(molecule: Molecule, settings: Settings): Perceived {
   const context = perceptionContext(molecule, settings);
-  const candidates: Candidate[] = [
-    ...centreCandidates(context).map(
-      centre => ({ kind: 'centre', centre, ends: [{ atom: centre.atom, ligands: centre.ligands }] }) as const,
-    ),
-    ...doubleBondCandidates(context).map(
-      bond =>
-        ({
-          kind: 'double-bond',
-          bond,
-          ends: [
-            { atom: bond.ends[0], ligands: bond.ligands[0] },
-            { atom: bond.ends[1], ligands: bond.ligands[1] },
-          ],
-        }) as const,
-    ),
-  ];
+  const candidates: Candidate[] = [];
+  for (const centre of centreCandidates(context)) {
+    candidates.push({ kind: 'centre', centre, ends: [{ atom: centre.atom, ligands: centre.ligands }] });
+  }
+  for (const pair of [...doubleBondCandidates(context), ...axisCandidates(context)]) {
+    const ends = pair.ends.map((atom, e) => ({ atom, ligands: pair.ligands[e]! }));
+    candidates.push({ kind: 'pair', pair, ends });
+  }
   const stated = statedTable(molecule);
   const units = prune(context, candidates).map(candidate => measured(context, candidate, stated));
+  for (const helix of helixCandidates(context)) units.push(measureHelix(context, helix));
   return { units, warnings: [] };
 }
 
 function measured(context: PerceptionContext, candidate: Candidate, stated: StatedTable): StereoUnit {
+  const { molecule } = context;
   if (context.space !== null) {
     return candidate.kind === 'centre'
       ? measureCentre(context, candidate.centre)
-      : measureDoubleBond(context, candidate.bond);
+      : measurePair(context, candidate.pair);
+  }
+  if (molecule.dimension === 2 && molecule.stated.length === 0) {
+    return candidate.kind === 'centre'
+      ? drawnCentre(molecule, candidate.centre)
+      : drawnPair(molecule, candidate.pair);
   }
   return candidate.kind === 'centre'
     ? statedCentre(stated, candidate.centre)
-    : statedDoubleBond(stated, candidate.bond);
+    : statedPair(stated, candidate.pair);
 }

@@ -1,7 +1,7 @@
 /** Units whose arrangement a notation states (SMILES, InChI): the parity between the stated order of ligands and ours. */
 import { IMPLICIT_HYDROGEN, LONE_PAIR, type Molecule, type StatedStereo } from '../chemistry/molecule.ts';
 import type { CentreCandidate } from './centres.ts';
-import type { DoubleBondCandidate } from './double-bonds.ts';
+import type { PairCandidate } from './double-bonds.ts';
 import type { Ligand, StereoUnit } from './unit.ts';
 
 /** Statements by the atom they are made of: centres by their atom, the others by "lower-higher" end. */
@@ -42,24 +42,24 @@ export function statedCentre(table: StatedTable, candidate: CentreCandidate): St
 }
 
 /** A double bond or cumulene with the arrangement its notation states. */
-export function statedDoubleBond(table: StatedTable, candidate: DoubleBondCandidate): StereoUnit {
+export function statedPair(table: StatedTable, candidate: PairCandidate): StereoUnit {
   const stated = table.pairs.get(pairKey(candidate.ends));
   const sense = stated === undefined ? 0 : statedSense(stated, candidate);
   return {
     ...plain(candidate.labile, sense),
-    kind: candidate.between.length === 0 ? 'double-bond' : 'cumulene',
+    kind: candidate.kind,
     atoms: candidate.ends,
     ends: [
       { atom: candidate.ends[0], ligands: candidate.ligands[0] },
       { atom: candidate.ends[1], ligands: candidate.ligands[1] },
     ],
-    planar: candidate.between.length > 0 && candidate.planar,
+    planar: candidate.kind === 'cumulene' && candidate.planar,
   };
 }
 
 function statedSense(
   stated: StatedStereo & { kind: 'double-bond' | 'allene' },
-  candidate: DoubleBondCandidate,
+  candidate: PairCandidate,
 ): 1 | -1 | 0 {
   const swapped = stated.ends[0] !== candidate.ends[0];
   const [ours, theirs] = swapped
