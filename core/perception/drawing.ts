@@ -15,20 +15,22 @@ const LEAST_VOLUME = 0.1;
 /** |sin| of the angle between a bond and the axis below which it is drawn in line with it. */
 const LEAST_SINE = 0.05;
 
-/** Height at which the far end of a marked bond is taken, in bond lengths, as seen from `atom`: only marks whose narrow end is there count. */
-function heightOf(molecule: Molecule, atom: number, ligand: number): { height: number; wavy: boolean } {
-  const bond = bondBetween(molecule, atom, ligand);
-  if (bond < 0 || molecule.bondAtoms[2 * bond] !== atom) return { height: 0, wavy: false };
-  switch (molecule.bondMarks[bond]) {
+/** Height at which the far end of a marked bond is taken, in bond lengths, as seen from `atom`: 1 for a wedge, -1 for a hashed bond, 0 without a mark or where its narrow end is at the other atom. */
+export function markHeight(molecule: Molecule, atom: number, ligand: number): 1 | -1 | 0 {
+  switch (markFrom(molecule, atom, ligand)) {
     case BondMark.wedge:
-      return { height: 1, wavy: false };
+      return 1;
     case BondMark.hash:
-      return { height: -1, wavy: false };
-    case BondMark.wavy:
-      return { height: 0, wavy: true };
+      return -1;
     default:
-      return { height: 0, wavy: false };
+      return 0;
   }
+}
+
+function markFrom(molecule: Molecule, atom: number, ligand: number): number {
+  const bond = ligand < 0 ? -1 : bondBetween(molecule, atom, ligand);
+  if (bond < 0 || molecule.bondAtoms[2 * bond] !== atom) return BondMark.none;
+  return molecule.bondMarks[bond]!;
 }
 
 type Point = [number, number, number];
@@ -51,14 +53,13 @@ export function drawnCentre(molecule: Molecule, candidate: CentreCandidate): Ste
   for (const ligand of ligands) {
     if (ligand < 0) continue;
     const point = direction(molecule, atom, ligand);
-    const mark = heightOf(molecule, atom, ligand);
     if (point === null) {
       warnings.push('two atoms lie on one another in the drawing');
       continue;
     }
-    point[2] = mark.height;
-    if (mark.height !== 0) marked++;
-    wavy ||= mark.wavy;
+    point[2] = markHeight(molecule, atom, ligand);
+    if (point[2] !== 0) marked++;
+    wavy ||= markFrom(molecule, atom, ligand) === BondMark.wavy;
     points.push(point);
   }
   let sense: 1 | -1 | 0 = 0;
@@ -181,15 +182,13 @@ function axialTorsion(molecule: Molecule, pair: PairCandidate): number | null {
   for (let e = 0; e < 2; e++) {
     const end = pair.ends[e]!;
     const ligands = pair.ligands[e]!;
-    const marks = ligands.map(ligand =>
-      ligand < 0 ? { height: 0, wavy: false } : heightOf(molecule, end, ligand),
-    );
+    const marks = ligands.map(ligand => markHeight(molecule, end, ligand));
     const at = ligands.findIndex(ligand => ligand >= 0);
     if (at < 0) return null;
     if (at === 1) shift += 180;
-    let height = marks[at]!.height;
+    let height: number = marks[at]!;
     // Where only the other ligand is marked, this one is on the other side.
-    if (height === 0) height = -(marks[1 - at]?.height ?? 0);
+    if (height === 0) height = -(marks[1 - at] ?? 0);
     if (height !== 0) marked = true;
     const to = direction(molecule, end, ligands[at]!);
     const own = e === 0 ? 1 : 2;

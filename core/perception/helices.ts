@@ -7,6 +7,7 @@
 import { isLocated, type Molecule } from '../chemistry/molecule.ts';
 import { torsion } from '../geometry/torsion.ts';
 import type { PerceptionContext } from './context.ts';
+import { markHeight } from './drawing.ts';
 import type { StereoUnit, UnitState } from './unit.ts';
 
 /** Fusion atoms on the inner rim of a helicene of n rings: n − 1. Six rings do not pass each other at room temperature, five do within hours to days. */
@@ -85,14 +86,22 @@ function sharedRings(context: PerceptionContext, first: number, second: number):
   return rings.ringsAt[first]!.filter(index => rings.ringsAt[second]!.includes(index)).length;
 }
 
-/** Measures a helix in space; without coordinates nothing states it. */
+/** Measures a helix in space, or reads it from a drawing in which one end is marked as the nearer; a notation cannot state it. */
 export function measureHelix(context: PerceptionContext, candidate: HelixCandidate): StereoUnit {
   const { path, labile } = candidate;
+  const { molecule, space } = context;
   const ends = [path[0]!, path[path.length - 1]!] as const;
-  const sum = context.space === null ? null : windingSum(context.molecule, context.space, path);
-  const firmness = sum === null ? null : Math.min(1, Math.abs(sum) / IDEAL_SUM);
-  const state: UnitState =
-    firmness === null ? 'unspecified' : firmness < context.settings.flatFirmness ? 'flat' : 'clear';
+  let sum: number | null = null;
+  let firmness: number | null = null;
+  let state: UnitState = 'unspecified';
+  if (space !== null) {
+    sum = path.every(atom => isLocated(molecule, atom)) ? windingSum(pathCoordinates(space, path)) : null;
+    firmness = sum === null ? null : Math.min(1, Math.abs(sum) / IDEAL_SUM);
+    if (firmness !== null) state = firmness < context.settings.flatFirmness ? 'flat' : 'clear';
+  } else if (molecule.dimension === 2) {
+    sum = drawnWinding(molecule, path);
+    if (sum !== null) state = 'clear';
+  }
   return {
     kind: 'helix',
     atoms: ends,
@@ -100,26 +109,41 @@ export function measureHelix(context: PerceptionContext, candidate: HelixCandida
     planar: false,
     state,
     sense: state === 'clear' ? (sum! > 0 ? 1 : -1) : 0,
-    basis: context.space === null ? 'notation' : 'coordinates',
+    basis: space !== null ? 'coordinates' : molecule.dimension === 2 ? 'drawing' : 'notation',
     signedVolume: null,
     sigma: null,
     firmness,
-    torsion: sum,
+    torsion: space === null ? null : sum,
     torsionSigma: null,
     labile,
     warnings: [],
   };
 }
 
+function pathCoordinates(r: Float64Array, path: readonly number[]): Float64Array {
+  return Float64Array.from(path.flatMap(atom => [r[3 * atom]!, r[3 * atom + 1]!, r[3 * atom + 2]!]));
+}
+
 /** Sum of the torsions along the rim, degrees: positive winds clockwise. */
-function windingSum(molecule: Molecule, r: Float64Array, path: readonly number[]): number | null {
+function windingSum(points: Float64Array): number | null {
   let sum = 0;
-  for (let i = 0; i + 3 < path.length; i++) {
-    const four = path.slice(i, i + 4);
-    if (!four.every(atom => isLocated(molecule, atom))) return null;
-    const angle = torsion(r, four[0]!, four[1]!, four[2]!, four[3]!);
+  for (let i = 0; i + 3 < points.length / 3; i++) {
+    const angle = torsion(points, i, i + 1, i + 2, i + 3);
     if (Number.isNaN(angle)) return null;
     sum += angle;
   }
-  return sum;
+  return sum === 0 ? null : sum;
+}
+
+/** The winding of a drawn rim whose last bonds are marked: the rim descends evenly from the nearer end to the farther. */
+function drawnWinding(molecule: Molecule, path: readonly number[]): number | null {
+  const last = path.length - 1;
+  let first = markHeight(molecule, path[1]!, path[0]!);
+  let second = markHeight(molecule, path[last - 1]!, path[last]!);
+  if (first === 0) first = -second;
+  if (second === 0) second = -first;
+  if (first === second) return null;
+  const points = pathCoordinates(molecule.coordinates!, path);
+  for (let i = 0; i <= last; i++) points[3 * i + 2] = first + ((second - first) * i) / last;
+  return windingSum(points);
 }
