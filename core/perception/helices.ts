@@ -138,8 +138,8 @@ function windingSum(points: Float64Array): number | null {
 /** The winding of a drawn rim whose last bonds are marked: the rim descends evenly from the nearer end to the farther. */
 function drawnWinding(molecule: Molecule, path: readonly number[]): number | null {
   const last = path.length - 1;
-  let first = markHeight(molecule, path[1]!, path[0]!);
-  let second = markHeight(molecule, path[last - 1]!, path[last]!);
+  let first: number = markHeight(molecule, path[1]!, path[0]!);
+  let second: number = markHeight(molecule, path[last - 1]!, path[last]!);
   if (first === 0) first = -second;
   if (second === 0) second = -first;
   if (first === second) return null;
