@@ -48,18 +48,14 @@ export function nodeUnit(unit: StereoUnit, fragments: Fragments, fragment: numbe
   return { kind: unit.kind, planar: unit.planar, ends, ligands, unit };
 }
 
-/** Whether the configuration of a docket's unit is settled by it: decided, configurationally stable, ligands all told apart. */
-export function isAskedFor(labelled: LabelledUnit): boolean {
-  const { unit, ranking, descriptor } = labelled;
-  if (unit.sense === 0 || unit.labile !== null) return false;
-  if (descriptor !== null) return true;
-  const ranks = new Set<number>();
-  for (const { end, rank } of ranking) {
-    const key = rank * 4 + (end ?? 0);
-    if (ranks.has(key)) return false;
-    ranks.add(key);
-  }
-  return ranking.length > 0;
+/**
+ * Whether a docket's unit asks for a configuration: its arrangement is decided and configurationally stable.
+ *
+ * A letter is not needed: where the ranking of one unit rests on another that is undecided (1,4-disubstituted
+ * cyclohexanes beside an open centre), the arrangements still compare.
+ */
+export function isAskedFor({ unit }: LabelledUnit): boolean {
+  return unit.sense !== 0 && unit.labile === null;
 }
 
 /** Whether a mirror image shows the unit with the other sense: all kinds but double bonds and planar cumulenes. */
