@@ -99,9 +99,16 @@ export interface Settings {
   readonly flatSigmas: number;
   /** Most nodes a digraph may grow to before the ranking stops without a letter. */
   readonly digraphLimit: number;
+  /** Labile units get letters and count in the ranking of others, as if they were configurationally stable. */
+  readonly labileToo: boolean;
 }
 
-export const DEFAULT_SETTINGS: Settings = { flatFirmness: 0.2, flatSigmas: 3, digraphLimit: 200_000 };
+export const DEFAULT_SETTINGS: Settings = {
+  flatFirmness: 0.2,
+  flatSigmas: 3,
+  digraphLimit: 200_000,
+  labileToo: false,
+};
 
 /** The stereogenic units of one model. */
 export interface Docket {

@@ -42,6 +42,7 @@ export class Labeller {
   readonly view: Branches;
   private readonly scratch: Branches;
   private readonly undecided: readonly number[];
+  private readonly labileToo: boolean;
   /** The auxiliary descriptors of the ranking done last. */
   auxiliary: readonly AuxiliaryDescriptor[] = [];
 
@@ -49,13 +50,23 @@ export class Labeller {
     this.digraph = new Digraph(molecule, rankingGraph(molecule), settings.digraphLimit);
     this.view = new Branches(this.digraph);
     this.scratch = new Branches(this.digraph);
-    this.table = unitTable(molecule, units);
-    this.undecided = units.flatMap((unit, i) => (unit.sense === 0 && unit.labile === null ? [i] : []));
+    this.table = unitTable(molecule, units, settings.labileToo);
+    this.labileToo = settings.labileToo;
+    this.undecided = units.flatMap((unit, i) =>
+      unit.sense === 0 && (settings.labileToo || unit.labile === null) ? [i] : [],
+    );
   }
 
-  /** Labels one unit; null when it is not stereogenic. */
+  /** Labels one unit; null when it is not stereogenic. A labile unit gets its ranking and, unless the settings ask for it, no letter. */
   label(index: number): LabelledUnit | null {
     const unit = this.table.units[index]!;
+    const result = this.labelStable(index, unit);
+    return result === null || unit.labile === null || this.labileToo
+      ? result
+      : { ...result, descriptor: null };
+  }
+
+  private labelStable(index: number, unit: StereoUnit): LabelledUnit | null {
     if (unit.kind === 'helix' || unit.kind === 'plane') return labelByTurn(unit);
     try {
       return this.labelByRank(index, unit);

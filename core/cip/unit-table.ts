@@ -18,12 +18,13 @@ export interface UnitTable {
 }
 
 /** Arranges units for look-up. */
-export function unitTable(molecule: Molecule, units: readonly StereoUnit[]): UnitTable {
-  const sense = Int8Array.from(units, unit => (unit.labile === null ? unit.sense : 0));
+export function unitTable(molecule: Molecule, units: readonly StereoUnit[], labileToo: boolean): UnitTable {
+  const counts = (unit: StereoUnit): boolean => labileToo || unit.labile === null;
+  const sense = Int8Array.from(units, unit => (counts(unit) ? unit.sense : 0));
   const centreAt = new Int32Array(molecule.atomCount).fill(-1);
   const endsAt = new Map<number, UnitFromEnd[]>();
   units.forEach((unit, index) => {
-    if (unit.labile !== null) return;
+    if (!counts(unit)) return;
     if (unit.kind === 'centre') {
       centreAt[unit.atoms[0]!] = index;
     } else if (unit.ends.length === 2) {

@@ -40,18 +40,15 @@ export function axisCandidates(context: PerceptionContext): PairCandidate[] {
     const first = molecule.bondAtoms[2 * b]!;
     const second = molecule.bondAtoms[2 * b + 1]!;
     if (!isPlanar(molecule, first) || !isPlanar(molecule, second)) continue;
-    const firstRing = rings.atomInRing[first] === 1;
-    const secondRing = rings.atomInRing[second] === 1;
-    // At least one side is a ring, so that there are ortho positions at all.
-    if (!isRingSide(context, first, second) && !isRingSide(context, second, first)) continue;
+    // At least one side is an aromatic or other unsaturated ring, so that there are ortho positions at all.
+    if (!isUnsaturatedRing(context, first, second) && !isUnsaturatedRing(context, second, first)) continue;
     const flanksFirst = flanks(context, first, second);
     const flanksSecond = flanks(context, second, first);
     if (flanksFirst === null || flanksSecond === null) continue;
     const bulks = [...flanksFirst.bulks, ...flanksSecond.bulks];
     const hindrance = bulks.reduce((sum, bulk) => sum + bulk, 0);
     if (hindrance < MENTION_LIMIT) continue;
-    const bothRings =
-      firstRing && secondRing && isRingSide(context, first, second) && isRingSide(context, second, first);
+    const bothRings = isUnsaturatedRing(context, first, second) && isUnsaturatedRing(context, second, first);
     const limit = bothRings ? RING_LIMIT : OPEN_LIMIT;
     const hindered =
       hindrance >= limit && Math.max(...flanksFirst.bulks) > 0 && Math.max(...flanksSecond.bulks) > 0;
@@ -90,10 +87,14 @@ function isAcylLike(molecule: Molecule, atom: number): boolean {
   return isUnsaturated(molecule, atom);
 }
 
-/** Whether both ligands of an end are in one ring with it. */
-function isRingSide(context: PerceptionContext, atom: number, other: number): boolean {
-  const ligands = ligandsOf(context.molecule, atom, other);
-  return commonRing(context, atom, ligands) !== null;
+/** Whether an end and both its ligands are in one ring in which they are all unsaturated. */
+function isUnsaturatedRing(context: PerceptionContext, atom: number, other: number): boolean {
+  const { molecule } = context;
+  const ligands = ligandsOf(molecule, atom, other);
+  if (commonRing(context, atom, ligands) === null) return false;
+  return molecule.elements[atom] === 7
+    ? ligands.every(ligand => isUnsaturated(molecule, ligand))
+    : isUnsaturated(molecule, atom);
 }
 
 function ligandsOf(molecule: Molecule, atom: number, other: number): number[] {
