@@ -244,9 +244,7 @@ function judgeAsItStands(
   warnings: readonly string[],
 ): EntryComparison {
   const judged = assign(
-    pairing.matches.map(({ candidates }) =>
-      candidates.map(match => judgeMatch(examined, pairing.fragments, match)),
-    ),
+    pairing.matches.map(({ candidates }) => candidates.map(match => judgeMatch(examined, pairing, match))),
   );
   const said = new Set(warnings);
   const intended = intention.cut(pairing.cut);
@@ -254,6 +252,7 @@ function judgeAsItStands(
   const units: UnitVerdict[] = [];
   const settled = new Set<number>();
   const molecules: MoleculeRelation[] = [];
+  const chiral: Relation[] = [];
   const mapping = new Int32Array(examined.molecule.atomCount).fill(-1);
   const choices: (readonly number[])[][] = [];
   let equivalentMappings = 1;
@@ -293,6 +292,8 @@ function judgeAsItStands(
     const relation = relationOf(source.units, search);
     const matters = source === chief || source.units.length > 0;
     molecules.push({ atoms: match.model.atoms, relation: matters ? relation : null });
+    // A molecule that is its own mirror image and as intended goes with any relation of the others.
+    if (matters && !(relation === 'same' && search.mirrored)) chiral.push(relation);
     if (search.choices.length > 1) {
       for (const { nodes } of search.choices)
         choices.push(nodes.map(ends => ends.map(node => match.model.atoms[node]!)));
@@ -303,11 +304,11 @@ function judgeAsItStands(
   });
   units.sort((a, b) => (a.unit ?? Number.MAX_SAFE_INTEGER) - (b.unit ?? Number.MAX_SAFE_INTEGER));
   noteAbsent(pairing, intended.list, judged, said);
-  const relations = new Set(molecules.map(({ relation }) => relation).filter(relation => relation !== null));
+  const relations = new Set(chiral);
   const [only] = relations;
   return {
     examined,
-    relation: relations.size === 1 && only ? only : 'mixed',
+    relation: relations.size > 1 ? 'mixed' : (only ?? 'same'),
     units,
     molecules,
     mapping,
@@ -349,7 +350,8 @@ function noteAbsent(
 }
 
 /** Searches the mappings of one pair. */
-function judgeMatch(examined: Examined, fragments: Fragments, match: FragmentMatch): Judged {
+function judgeMatch(examined: Examined, { fragments, matches }: Pairing, match: FragmentMatch): Judged {
+  const several = matches.length > 1;
   const owned = new Set<number>();
   for (const atom of match.model.atoms) owned.add(atom);
   const units: NodeUnit[] = [];
@@ -369,14 +371,14 @@ function judgeMatch(examined: Examined, fragments: Fragments, match: FragmentMat
     add(labelled.unit, u);
   });
   let table = unitTable(units, match.model.count);
-  let search = searchMatch(match, table);
+  let search = searchMatch(match, table, several);
   if (search.arrangements.includes(Arrangement.missing)) {
     // A unit that ranking found not stereogenic in the model may be so in the intention (meso against chiral).
     const key = (unit: StereoUnit): string => `${unit.kind} ${unit.atoms.join(' ')}`;
     const known = new Set(examined.docket.units.map(({ unit }) => key(unit)));
     for (const candidate of examined.docket.candidates) if (!known.has(key(candidate))) add(candidate, -1);
     table = unitTable(units, match.model.count, freeNodes(match.model, units, docketIndex));
-    search = searchMatch(match, table);
+    search = searchMatch(match, table, several);
   }
   return { match, search, docketIndex, table };
 }

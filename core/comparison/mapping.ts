@@ -507,7 +507,7 @@ function joinFragments(parts: readonly Fragment[], fragments: Fragments): Fragme
 }
 
 /** Chooses the mapping of a match that leaves the fewest inverted units. */
-export function searchMatch(match: FragmentMatch, model: UnitTable): MappingSearch {
+export function searchMatch(match: FragmentMatch, model: UnitTable, mirrorAlways: boolean): MappingSearch {
   const { intended, level, base, evidence } = match;
   if (match.placements) return searchImages(intended.units, match.placements, model);
   return searchMappings(
@@ -516,6 +516,7 @@ export function searchMatch(match: FragmentMatch, model: UnitTable): MappingSear
     base,
     model,
     level === 'skeletal' ? evidence : null,
+    mirrorAlways,
   );
 }
 

@@ -40,7 +40,7 @@ export interface MappingSearch {
   readonly equivalent: number;
   /** The different sets of model units that such mappings call inverted. */
   readonly choices: readonly InvertedChoice[];
-  /** Whether the mirrored intention is matched without exception. */
+  /** Whether the mirrored intention is matched without exception; false where that was not looked for. */
   readonly mirrored: boolean;
   /** Smallest bonding cost. */
   readonly bondingCost: number;
@@ -259,13 +259,17 @@ export function mixedGroups(
   return new Set([...seen].filter(([, both]) => both === 3).map(([group]) => group));
 }
 
-/** Searches all mappings for the one that leaves the fewest inverted units, and for a match with the mirror image. */
+/**
+ * Searches all mappings for the one that leaves the fewest inverted units and, where some are inverted or
+ * `mirrorAlways` is set, for a match with the mirror image.
+ */
 export function searchMappings(
   units: readonly IntendedUnit[],
   symmetry: Symmetry,
   base: Int32Array,
   model: UnitTable,
   evidence: BondingEvidence | null,
+  mirrorAlways = false,
 ): MappingSearch {
   const walk = new Walk(units, symmetry, base, model, evidence);
   let best: Tally = {
@@ -295,7 +299,7 @@ export function searchMappings(
   );
   let complete = !walk.exhausted;
   let mirrored = false;
-  if (best.inverted > 0 && best.undecided === 0) {
+  if ((best.inverted > 0 || mirrorAlways) && best.undecided === 0) {
     const bound = { bonding: best.bonding, inverted: 0, undecided: 0 };
     walk.run(
       true,

@@ -88,6 +88,20 @@ const CASES: readonly (readonly [string, string, string, string, number])[] = [
     'same',
     0,
   ],
+  [
+    'the salt of an achiral acid, inverted',
+    'C[C@@H](N)c1ccccc1.OC(=O)/C=C/C(=O)O',
+    'C[C@H](N)c1ccccc1.OC(=O)/C=C/C(=O)O',
+    'enantiomer',
+    1,
+  ],
+  [
+    'the salt of a chiral acid, its base inverted',
+    'C[C@@H](N)c1ccccc1.OC(=O)[C@H](O)[C@@H](O)C(=O)O',
+    'C[C@H](N)c1ccccc1.OC(=O)[C@H](O)[C@@H](O)C(=O)O',
+    'mixed',
+    1,
+  ],
   ['another tautomer', 'C[C@H](N)Cc1c[nH]cn1', 'C[C@H](N)Cc1cnc[nH]1', 'same', 0],
   [
     'chain reversed is another sugar: glucose against gulose',
