@@ -47,12 +47,13 @@ export function readCxTail(tail: string, atomCount: number): CxTail {
   };
   const labelMatch = /\$([^$]*)\$/u.exec(inner);
   if (labelMatch && !labelMatch[1]!.startsWith('_AV')) {
+    // A semicolon parts two labels unless it ends an escaped character, as in &#59;.
     labels = labelMatch[1]!
-      .split(';')
+      .split(/(?<!&#\d{1,7});/u)
       .map(label => label.replace(/&#(\d+);?/gu, (_, code: string) => String.fromCodePoint(Number(code))));
   }
   const fields = inner.replace(/\([^)]*\)/u, '').replace(/\$[^$]*\$/gu, '');
-  for (const match of fields.matchAll(/(?:^|,)(a|&\d+|o\d+|\^[1-7]|w[UD]?):((?:\d+(?:\.\d+)?,?)*)/gu)) {
+  for (const match of fields.matchAll(/(?:^|,)(a|&\d+|o\d+|\^[1-7]|w[UD]?):(\d+(?:\.\d+)?(?:,\d+(?:\.\d+)?)*)/gu)) {
     const [, key, list] = match as unknown as [string, string, string];
     if (key === 'a') groups.push({ kind: 'absolute', number: 0, atoms: atomList(list, key) });
     else if (key[0] === '&')
