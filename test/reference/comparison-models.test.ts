@@ -123,10 +123,19 @@ describe('found against intended over published models', () => {
           .map(atom => spoiled.order[atom]!)
           .sort((a, b) => a - b);
         const expected = [...wrong].map(u => docket.units[u]!.unit.atoms[0]!).sort((a, b) => a - b);
-        const failing = result.relation === 'undecided' || result.relation === 'other compound';
-        if (failing || found.join(' ') !== expected.join(' ')) {
+        const lettered = centres.filter(u => 'RS'.includes(docket.units[u]!.descriptor ?? '-'));
+        const chiral = asked.filter(u => docket.units[u]!.unit.kind !== 'double-bond');
+        const relation =
+          wrong.size === 0
+            ? 'same'
+            : wrong.size === chiral.length
+              ? 'enantiomer'
+              : wrong.size === 1 && lettered.length >= 2
+                ? 'epimer'
+                : 'diastereomer';
+        if (result.relation !== relation || found.join(' ') !== expected.join(' ')) {
           differing.push(
-            `${molecule.name} ${JSON.stringify(spoiling)}: ${result.relation} ${result.difference ?? ''} [${found}] expected [${expected}] ${result.warnings}`,
+            `${molecule.name} ${JSON.stringify(spoiling)}: ${result.relation} ${result.difference ?? ''} [${found.join(' ')}] expected ${relation} [${expected.join(' ')}] ${result.warnings.join('; ')}`,
           );
         }
       }
