@@ -124,11 +124,10 @@ describe('found against intended over published models', () => {
           .sort((a, b) => a - b);
         const expected = [...wrong].map(u => docket.units[u]!.unit.atoms[0]!).sort((a, b) => a - b);
         const lettered = centres.filter(u => 'RS'.includes(docket.units[u]!.descriptor ?? '-'));
-        const chiral = asked.filter(u => docket.units[u]!.unit.kind !== 'double-bond');
         const relation =
           wrong.size === 0
             ? 'same'
-            : wrong.size === chiral.length
+            : wrong.size === centres.length
               ? 'enantiomer'
               : wrong.size === 1 && lettered.length >= 2
                 ? 'epimer'
