@@ -61,12 +61,14 @@ export function kekulise(graph: AromaticGraph): KekuleResult {
       !inAnyRing[graph.edges[2 * edge + 1]!],
   ];
   const matching = new Matching(usable, graph.needs);
+  let settled = false;
   for (const allowed of stages) {
     matching.allow(allowed);
-    matching.cover(DoubleBondNeed.required);
-    if (matching.uncovered().length === 0) break;
+    if (!settled) matching.cover(DoubleBondNeed.required);
+    settled ||= matching.uncovered().length === 0;
+    if (settled) matching.cover(DoubleBondNeed.optional);
   }
-  matching.cover(DoubleBondNeed.optional);
+  if (!settled) matching.cover(DoubleBondNeed.optional);
   const doubled = new Uint8Array(graph.edges.length / 2);
   for (let e = 0; e < doubled.length; e++) {
     if (matching.mate[graph.edges[2 * e]!] === graph.edges[2 * e + 1]!) doubled[e] = 1;
@@ -184,6 +186,7 @@ class Matching {
   private readonly base: Int32Array;
   private readonly outer: Uint8Array;
   private readonly inBlossom: Uint8Array;
+  private readonly seen: Uint8Array;
   /** Atoms of the component searched: all others keep their state. */
   private members: number[] = [];
 
@@ -196,6 +199,7 @@ class Matching {
     this.base = new Int32Array(n);
     this.outer = new Uint8Array(n);
     this.inBlossom = new Uint8Array(n);
+    this.seen = new Uint8Array(n);
   }
 
   allow(allowed: (edge: number) => boolean): void {
@@ -231,7 +235,7 @@ class Matching {
   }
 
   private collect(root: number): void {
-    const seen = this.inBlossom;
+    const { seen } = this;
     this.members = [root];
     seen[root] = 1;
     for (let at = 0; at < this.members.length; at++) {
