@@ -1,6 +1,6 @@
 /** What both versions of the Molfile share: symbols, aromatic bonds, hydrogens, the dimension of the coordinates. */
 import { elementNumber } from '../chemistry/elements.ts';
-import { perfectMatching } from '../chemistry/kekule.ts';
+import { DoubleBondNeed, kekulise } from '../chemistry/kekule.ts';
 import { assembleMolecule, type Molecule, type StereoGroup } from '../chemistry/molecule.ts';
 import { molfileHydrogens, valenceProblem } from '../chemistry/valence.ts';
 import { EntryProblem } from './errors.ts';
@@ -177,7 +177,8 @@ function dimensionOf(coordinates: Float64Array, warnings: string[]): 0 | 2 | 3 {
 function orders(draft: MolfileDraft): Uint8Array {
   const { bondTypes, bondAtoms, elements, charges } = draft;
   const result = new Uint8Array(bondTypes.length);
-  const edges: [number, number][] = [];
+  const edges: number[] = [];
+  const edgeBonds: number[] = [];
   const used = new Int32Array(elements.length);
   const aromatic = new Uint8Array(elements.length);
   for (let b = 0; b < bondTypes.length; b++) {
@@ -185,7 +186,8 @@ function orders(draft: MolfileDraft): Uint8Array {
     const i = bondAtoms[2 * b]!;
     const j = bondAtoms[2 * b + 1]!;
     if (type === AROMATIC_TYPE) {
-      edges.push([i, j]);
+      edges.push(i, j);
+      edgeBonds.push(b);
       aromatic[i] = 1;
       aromatic[j] = 1;
       result[b] = 1;
@@ -200,27 +202,30 @@ function orders(draft: MolfileDraft): Uint8Array {
     if (aromatic[i] === 0) continue;
     const z = elements[i]!;
     const charge = charges[i]!;
-    if (z === 6 && charge === 0 && used[i]! < 4) needs[i] = MUST;
-    else if ((z === 8 || z === 16 || z === 34) && charge === 1 && used[i]! < 3) needs[i] = MUST;
+    if (z === 6 && charge === 0 && used[i]! < 4) needs[i] = DoubleBondNeed.required;
+    else if ((z === 8 || z === 16 || z === 34) && charge === 1 && used[i]! < 3)
+      needs[i] = DoubleBondNeed.required;
     else if (z === 7 || z === 15 || z === 33) {
-      if (charge === 1 && used[i]! < 4) needs[i] = MUST;
-      else if (charge === 0 && used[i]! < 3) needs[i] = MAY;
+      if (charge === 1 && used[i]! < 4) needs[i] = DoubleBondNeed.required;
+      else if (charge === 0 && used[i]! < 3) needs[i] = DoubleBondNeed.optional;
     }
   }
-  const { partner, unmatched } = perfectMatching(elements.length, needs, edges);
-  if (unmatched.length > 0) {
-    const named = unmatched.map(i => i + 1).join(', ');
+  const { doubled, uncovered } = kekulise({
+    atomCount: elements.length,
+    edges: Uint32Array.from(edges),
+    needs,
+    chains: true,
+  });
+  if (uncovered.length > 0) {
+    const named = uncovered.map(i => i + 1).join(', ');
     throw new EntryProblem(
       'no-kekule-structure',
       `no Kekulé structure fits the bonds of type 4 (aromatic): atoms ${named} would be left without a double bond`,
       null,
     );
   }
-  for (let b = 0; b < bondTypes.length; b++) {
-    if (bondTypes[b] === AROMATIC_TYPE && partner[bondAtoms[2 * b]!] === bondAtoms[2 * b + 1]!) result[b] = 2;
-  }
+  doubled.forEach((double, e) => {
+    if (double === 1) result[edgeBonds[e]!] = 2;
+  });
   return result;
 }
-
-const MUST = 1;
-const MAY = 2;

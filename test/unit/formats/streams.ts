@@ -5,7 +5,10 @@ import { readEntries } from '../../../core/formats/registry.ts';
 export const bytesOf = (text: string): Uint8Array => new TextEncoder().encode(text);
 
 /** The bytes in chunks of the given sizes, then the rest. */
-export async function* chunksOf(bytes: Uint8Array, sizes: readonly number[] = []): AsyncGenerator<Uint8Array> {
+export async function* chunksOf(
+  bytes: Uint8Array,
+  sizes: readonly number[] = [],
+): AsyncGenerator<Uint8Array> {
   let at = 0;
   for (const size of sizes) {
     yield bytes.subarray(at, at + size);
