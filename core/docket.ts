@@ -106,7 +106,7 @@ export interface Settings {
 export const DEFAULT_SETTINGS: Settings = {
   flatFirmness: 0.2,
   flatSigmas: 3,
-  digraphLimit: 200_000,
+  digraphLimit: 20_000,
   labileToo: false,
 };
 

@@ -3,6 +3,7 @@
  * letter that follows.
  */
 import { LONE_PAIR, type Molecule } from '../chemistry/molecule.ts';
+import { symmetryClasses } from '../chemistry/symmetry.ts';
 import type { Descriptor, LabelledUnit, RankedLigand, Settings } from '../docket.ts';
 import type { StereoUnit, UnitEnd } from '../perception/unit.ts';
 import { type AuxiliaryDescriptor, centreLetter, labelAuxiliary, pairLetter } from './auxiliary.ts';
@@ -43,6 +44,8 @@ export class Labeller {
   private readonly scratch: Branches;
   private readonly undecided: readonly number[];
   private readonly labileToo: boolean;
+  private classes: Int32Array | null = null;
+  private readonly beyondLimit = new Set<string>();
   /** The auxiliary descriptors of the ranking done last. */
   auxiliary: readonly AuxiliaryDescriptor[] = [];
 
@@ -68,13 +71,14 @@ export class Labeller {
 
   private labelStable(index: number, unit: StereoUnit): LabelledUnit | null {
     if (unit.kind === 'helix' || unit.kind === 'plane') return labelByTurn(unit);
+    if (this.isBeyondLimit(unit)) return this.unfinished(unit);
     try {
       return this.labelByRank(index, unit);
     } catch (error) {
       if (!(error instanceof DigraphLimitError)) throw error;
-      return withoutLetter(unit, [
-        `no descriptor: ${error.message} (setting digraphLimit); the ranking was not finished`,
-      ]);
+      this.classes ??= symmetryClasses(this.digraph.molecule);
+      this.beyondLimit.add(this.classOf(unit));
+      return this.unfinished(unit);
     }
   }
 
@@ -85,6 +89,25 @@ export class Labeller {
     this.auxiliary = [];
     if (!isComplete(ranking)) this.finish(unitIndex, ranking, ligands);
     return { ranking, ligands };
+  }
+
+  /** Whether a unit of the same symmetry class, so with the same digraph, has been found to outgrow the limit. */
+  private isBeyondLimit(unit: StereoUnit): boolean {
+    return this.beyondLimit.size > 0 && this.beyondLimit.has(this.classOf(unit));
+  }
+
+  private classOf(unit: StereoUnit): string {
+    return unit.atoms
+      .map(atom => this.classes![atom]!)
+      .sort((a, b) => a - b)
+      .join();
+  }
+
+  private unfinished(unit: StereoUnit): LabelledUnit {
+    const { limit } = this.digraph;
+    return withoutLetter(unit, [
+      `no descriptor: the hierarchical digraph has more than ${limit} nodes (setting digraphLimit); the ranking was not finished`,
+    ]);
   }
 
   private labelByRank(index: number, unit: StereoUnit): LabelledUnit | null {

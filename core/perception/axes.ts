@@ -24,8 +24,8 @@ const BULK_QUATERNARY = 1.5;
 const RING_LIMIT = 2.5;
 /** The same where one side is not a ring: its flanks can bend away. */
 const OPEN_LIMIT = 3.3;
-/** Below this an axis is not worth a mention. */
-const MENTION_LIMIT = 1.5;
+/** How far below its limit an axis is still worth a mention as labile. */
+const MENTION_MARGIN = 0.6;
 /** Rings that contain the axis itself and are no larger than this hold it flat or let it flip with the ring. */
 const SMALLEST_BRIDGE = 7;
 
@@ -47,9 +47,9 @@ export function axisCandidates(context: PerceptionContext): PairCandidate[] {
     if (flanksFirst === null || flanksSecond === null) continue;
     const bulks = [...flanksFirst.bulks, ...flanksSecond.bulks];
     const hindrance = bulks.reduce((sum, bulk) => sum + bulk, 0);
-    if (hindrance < MENTION_LIMIT) continue;
     const bothRings = isUnsaturatedRing(context, first, second) && isUnsaturatedRing(context, second, first);
     const limit = bothRings ? RING_LIMIT : OPEN_LIMIT;
+    if (hindrance < limit - MENTION_MARGIN) continue;
     const hindered =
       hindrance >= limit && Math.max(...flanksFirst.bulks) > 0 && Math.max(...flanksSecond.bulks) > 0;
     const ortho = bulks.filter(bulk => bulk > 0).length;

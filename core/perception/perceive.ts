@@ -2,7 +2,7 @@
 import type { Molecule } from '../chemistry/molecule.ts';
 import type { Settings } from '../docket.ts';
 import { axisCandidates } from './axes.ts';
-import { type CentreCandidate, centreCandidates, measureCentre } from './centres.ts';
+import { type CentreCandidate, centreCandidates, isBridgehead, measureCentre } from './centres.ts';
 import { type PerceptionContext, perceptionContext } from './context.ts';
 import { doubleBondCandidates, measurePair, type PairCandidate } from './double-bonds.ts';
 import { drawnCentre, drawnPair } from './drawing.ts';
@@ -34,9 +34,23 @@ export function perceiveUnits(molecule: Molecule, settings: Settings): Perceived
     candidates.push({ kind: 'pair', pair, ends });
   }
   const stated = statedTable(molecule);
-  const units = prune(context, candidates).map(candidate => measured(context, candidate, stated));
+  const units = prune(context, candidates)
+    .map(candidate => measured(context, candidate, stated))
+    .filter(unit => !isHeldBySymmetry(context, unit));
   for (const helix of helixCandidates(context)) units.push(measureHelix(context, helix));
   return { units, warnings: [] };
+}
+
+/**
+ * A bridgehead of which nothing is stated and two bridges of which are alike: its rings, not a choice of configuration,
+ * hold it as it is. Where coordinates or a notation give it an arrangement, it is taken as given.
+ */
+function isHeldBySymmetry(context: PerceptionContext, unit: StereoUnit): boolean {
+  if (unit.kind !== 'centre' || unit.sense !== 0 || unit.basis === 'coordinates') return false;
+  const { ligands, atom } = unit.ends[0]!;
+  if (!isBridgehead(context, atom)) return false;
+  const classes = ligands.filter(ligand => ligand >= 0).map(ligand => context.classes[ligand]);
+  return new Set(classes).size < classes.length;
 }
 
 function measured(context: PerceptionContext, candidate: Candidate, stated: StatedTable): StereoUnit {
