@@ -5,6 +5,7 @@ import { parseTyped } from '../comparison/typed.ts';
 import type { Settings } from '../docket.ts';
 import { examine } from '../examine.ts';
 import type { Format, Limits, RawEntry } from '../formats/format.ts';
+import { inchiFormat } from '../formats/inchi.ts';
 import { smilesFormat } from '../formats/smiles.ts';
 import { type CommandIo, UsageError } from './io.ts';
 import { openInput } from './reading.ts';
@@ -98,16 +99,17 @@ export async function readIntended(
   if (looksLikePath(value)) throw new UsageError(`--intended ${value}: there is no such file`);
   const bytes = new TextEncoder().encode(`${value}\n`);
   const raw: RawEntry = { entry: 1, line: 1, bytes };
-  const [entry] = smilesFormat.parse(raw, limits);
+  const format = value.startsWith('InChI=') ? inchiFormat : smilesFormat;
+  const [entry] = format.parse(raw, limits);
   if (entry?.molecule && !entry.error) {
     return {
-      intentions: Intentions.of([sourceOf(raw, 0, smilesFormat, limits, settings, entry.name)]),
+      intentions: Intentions.of([sourceOf(raw, 0, format, limits, settings, entry.name)]),
       problems: [],
     };
   }
   const loose = parseTyped(value, false);
   if (loose) return { intentions: Intentions.typed(loose), problems: [] };
   throw new UsageError(
-    `--intended ${value}: neither a file, nor descriptors on units (C7=R,C9=S), nor a SMILES: ${entry?.error?.message ?? 'empty'}`,
+    `--intended ${value}: neither a file, nor descriptors on units (C7=R,C9=S), nor ${format === inchiFormat ? 'an' : 'a'} ${format.name}: ${entry?.error?.message ?? 'empty'}`,
   );
 }

@@ -111,6 +111,45 @@ describe('check', () => {
     });
   });
 
+  it('takes an InChI, a drawing and another model as intention', async () => {
+    place.write('poses.sdf', halide('one', 1) + halide('two', -1));
+    // (R)-bromochlorofluoromethane; the parity was checked against rdkit.js.
+    const inchi = await place.run([
+      'check',
+      'poses.sdf',
+      '--intended',
+      'InChI=1S/CHBrClF/c2-1(3)4/h1H/t1-/m0/s1',
+      '--json',
+    ]);
+    expect(inchi.lines().map(({ relation }) => relation)).toEqual(['same', 'enantiomer']);
+    place.write('model.sdf', halide('model', -1));
+    const model = await place.run(['check', 'poses.sdf', '--intended', 'model.sdf', '--json']);
+    expect(model.lines().map(({ relation }) => relation)).toEqual(['enantiomer', 'same']);
+    // Drawn with Br up, F left and Cl right in the plane, H dashed away below: Br, Cl, F clockwise is R.
+    place.write(
+      'drawing.mol',
+      [
+        'drawing',
+        '  test            2D',
+        '',
+        '  5  4  0  0  1  0  0  0  0  0999 V2000',
+        '    0.0000    0.0000    0.0000 C   0  0',
+        '    0.0000    1.0000    0.0000 Br  0  0',
+        '    0.8700   -0.5000    0.0000 Cl  0  0',
+        '   -0.8700   -0.5000    0.0000 F   0  0',
+        '    0.1000   -1.0000    0.0000 H   0  0',
+        '  1  2  1  0',
+        '  1  3  1  0',
+        '  1  4  1  0',
+        '  1  5  1  6',
+        'M  END',
+        '',
+      ].join('\n'),
+    );
+    const drawing = await place.run(['check', 'poses.sdf', '--intended', 'drawing.mol', '--json']);
+    expect(drawing.lines().map(({ relation }) => relation)).toEqual(['same', 'enantiomer']);
+  });
+
   it('matches intentions by name, by data item, and chooses none where several fit', async () => {
     place.write('poses.sdf', halide('one', 1).replace('one\n\n', 'A-1\n\n') + halide('two', -1));
     place.write('both.sdf', halide('A-1', 1) + halide('two', -1));
