@@ -15,6 +15,20 @@ export interface OpenInput {
   readonly size: number | null;
 }
 
+/** Milliseconds without further bytes after which a pipe's format is told from what has come. */
+const PAUSE = 200;
+
+/** Whether nothing comes for a while. */
+async function idle(next: Promise<unknown>): Promise<boolean> {
+  let timer: NodeJS.Timeout | undefined;
+  const pause = new Promise<true>(done => {
+    timer = setTimeout(() => done(true), PAUSE);
+  });
+  const paused = await Promise.race([pause, next.then(() => false)]);
+  clearTimeout(timer);
+  return paused;
+}
+
 /** Opens a file or standard input. @throws Error that names the file and says what is wrong with it. */
 export async function openInput(io: CommandIo, path: string, limits: Limits): Promise<OpenInput> {
   const input = await io.open(path);
@@ -25,8 +39,12 @@ export async function openInput(io: CommandIo, path: string, limits: Limits): Pr
   // A pipe is not waited on beyond what is needed to tell the format.
   const wanted = path === '-' ? HEAD_LEAST : HEAD_BYTES;
   let ended = false;
+  let pending: Promise<IteratorResult<Uint8Array>> | null = null;
   while (length < wanted) {
-    const next = await source.next();
+    pending ??= source.next();
+    if (path === '-' && length > 0 && (await idle(pending))) break;
+    const next = await pending;
+    pending = null;
     if (next.done) {
       ended = true;
       break;
@@ -54,7 +72,8 @@ export async function openInput(io: CommandIo, path: string, limits: Limits): Pr
     yield* first;
     if (ended) return;
     for (;;) {
-      const next = await source.next();
+      const next = await (pending ?? source.next());
+      pending = null;
       if (next.done) return;
       yield next.value;
     }
