@@ -80,29 +80,28 @@ function smallRing(molecule: Molecule, i: number, j: number, k: number): 0 | 3 |
   if (bondBetween(molecule, i, k) >= 0) return 3;
   for (let a = molecule.neighbourStart[i]!; a < molecule.neighbourStart[i + 1]!; a++) {
     const m = molecule.neighbours[a]!;
-    if (m !== j && bondBetween(molecule, m, k) >= 0 && bondBetween(molecule, m, j) < 0) return 4;
+    if (m !== j && bondBetween(molecule, m, k) >= 0) return 4;
   }
   return 0;
 }
 
-/** Step-down 1-1-1, 2-2-2, 3-2-3, wild-2-wild. */
+/** Step-down of the outer atoms from their own type to any type; the centre keeps its type. */
 function lookUp(parameters: Mmff94Parameters, type: number, i: number, j: number, k: number): readonly number[] | undefined {
   const ei = parameters.equivalents[i]!;
   const ej = parameters.equivalents[j]!;
   const ek = parameters.equivalents[k]!;
-  for (const [outer, inner] of [[0, 0], [1, 1], [2, 1], [-1, 1]] as const) {
-    // Columns of the table: type, then levels 2 to 5; level 1 is the type itself.
-    const a = outer < 0 ? 0 : ei[LEVELS[outer]!]!;
-    const c = outer < 0 ? 0 : ek[LEVELS[outer]!]!;
-    const centre = ej[LEVELS[inner]!]!;
-    const found = parameters.angles.get(key(type, Math.min(a, c), centre, Math.max(a, c)));
+  for (const column of OUTER) {
+    const a = ei[column]!;
+    const c = ek[column]!;
+    const found = parameters.angles.get(key(type, Math.min(a, c), ej[CENTRE]!, Math.max(a, c)));
     if (found) return found;
   }
   return undefined;
 }
 
-/** Columns of the equivalence table for levels 1, 2, 3 of the step-down. */
-const LEVELS = [0, 1, 2] as const;
+/** Columns of the equivalence table in the order of the step-down; the last is any type. */
+const OUTER = [0, 2, 3, 4] as const;
+const CENTRE = 1;
 
 /** θ0 where no table gives one (1996, 17, 616, table V). */
 function defaultAngle(parameters: Mmff94Parameters, type: number, ring: 0 | 3 | 4): number {

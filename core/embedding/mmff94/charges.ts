@@ -34,10 +34,10 @@ export function formalCharges(molecule: Molecule, typing: Typing): Float64Array 
         formal[atom] = types[atom] === 55 ? 1 / 2 : 1 / 3;
         break;
       case 76:
-        formal[atom] = ringShare(typing, atom, 76, -1);
+        formal[atom] = ringShare(molecule, typing, atom, 76, -1);
         break;
       case 81:
-        formal[atom] = ringShare(typing, atom, 81, 1);
+        formal[atom] = ringShare(molecule, typing, atom, 81, 1);
         break;
       case 61:
         formal[atom] = isIsonitrile(molecule, types, atom) ? 0 : 1;
@@ -74,15 +74,31 @@ export function formalCharges(molecule: Molecule, typing: Typing): Float64Array 
   return formal;
 }
 
-function ringShare(typing: Typing, atom: number, type: number, charge: number): number {
+function ringShare(molecule: Molecule, typing: Typing, atom: number, type: number, charge: number): number {
   let share = 0;
   for (const ring of typing.aromatic.rings) {
     if (ring.atoms.length !== 5 || !ring.atoms.includes(atom)) continue;
     let count = 0;
     for (const other of ring.atoms) if (typing.types[other] === type) count++;
-    if (count > share) share = count;
+    share = Math.max(share, count);
   }
+  if (type === 81) share += aminoPartners(molecule, typing, atom);
   return share > 0 ? charge / share : charge;
+}
+
+/** Nitrogens outside the ring that take part in an amidinium or guanidinium unit with a ring cation. */
+function aminoPartners(molecule: Molecule, typing: Typing, atom: number): number {
+  let count = 0;
+  const { neighbourStart, neighbours } = molecule;
+  for (let k = neighbourStart[atom]!; k < neighbourStart[atom + 1]!; k++) {
+    const centre = neighbours[k]!;
+    if (typing.types[centre] !== 80) continue;
+    for (let m = neighbourStart[centre]!; m < neighbourStart[centre + 1]!; m++) {
+      const type = typing.types[neighbours[m]!];
+      if (type === 55 || type === 56) count++;
+    }
+  }
+  return count;
 }
 
 function isIsonitrile(molecule: Molecule, types: Uint8Array, atom: number): boolean {
@@ -113,10 +129,6 @@ export function partialCharges(
       const other = neighbours[k]!;
       const otherType = types[other]!;
       const otherFormal = formal[other]!;
-      if (share === 0 && otherFormal < 0) {
-        q0 += otherFormal / (2 * (neighbourStart[other + 1]! - neighbourStart[other]!));
-      }
-      if (type === 62 && otherFormal > 0) q0 -= otherFormal / 2;
       const [otherIncrement, otherShare] = parameters.partialCharges[otherType] ?? [0, 0];
       sum += (otherShare ?? 0) * otherFormal;
       const bondType = bondTypes[neighbourBonds[k]!]!;

@@ -17,8 +17,8 @@ export interface OutOfPlaneTerms {
   readonly force: Float64Array;
 }
 
-/** Columns of the equivalence table for the outer atoms in the step-down; -1 is any type. */
-const OUTER = [0, 1, 2, -1] as const;
+/** Columns of the equivalence table for the outer atoms in the order of the step-down; the last is any type. */
+const OUTER = [0, 2, 3, 4] as const;
 
 /** Three Wilson angles for each centre whose constant is not zero. */
 export function outOfPlaneTerms(molecule: Molecule, typing: Typing, parameters: Mmff94Parameters): OutOfPlaneTerms {
@@ -30,9 +30,9 @@ export function outOfPlaneTerms(molecule: Molecule, typing: Typing, parameters: 
     const [a, b, c] = neighbours.subarray(neighbourStart[j]!, neighbourStart[j + 1]!) as unknown as [number, number, number];
     let constant = 0;
     for (const column of OUTER) {
-      const level = (atom: number): number => (column < 0 ? 0 : parameters.equivalents[typing.types[atom]!]![column]!);
+      const level = (atom: number): number => parameters.equivalents[typing.types[atom]!]![column]!;
       const outer = [level(a), level(b), level(c)].sort((p, q) => p - q);
-      const centre = parameters.equivalents[typing.types[j]!]![column === 0 ? 0 : 1]!;
+      const centre = parameters.equivalents[typing.types[j]!]![1]!;
       const found = parameters.outOfPlanes.get(key(outer[0]!, centre, outer[1]!, outer[2]!));
       if (found) {
         constant = found[0]!;

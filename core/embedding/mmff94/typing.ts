@@ -28,7 +28,7 @@ export class TypingError extends Error {
 export function typeAtoms(molecule: Molecule): Typing {
   const aromatic = aromaticity(molecule);
   const types = new Uint8Array(molecule.atomCount);
-  const typer = new Typer(molecule);
+  const typer = new Typer(molecule, aromatic);
   typer.aromaticTypes(aromatic, types);
   for (let atom = 0; atom < molecule.atomCount; atom++) {
     if (molecule.elements[atom] === 1 || types[atom] !== 0) continue;
@@ -47,8 +47,15 @@ export function typeAtoms(molecule: Molecule): Typing {
 
 class Typer {
   private readonly molecule: Molecule;
-  constructor(molecule: Molecule) {
+  /** Size of the smallest aromatic ring of each atom, 0 for none. */
+  private readonly ringSizes: Uint8Array;
+
+  constructor(molecule: Molecule, aromatic: Aromaticity) {
     this.molecule = molecule;
+    this.ringSizes = new Uint8Array(molecule.atomCount);
+    for (const ring of aromatic.rings) {
+      for (const atom of ring.atoms) if (this.ringSizes[atom] !== 5) this.ringSizes[atom] = ring.atoms.length;
+    }
   }
 
   private degree(atom: number): number {
@@ -129,7 +136,7 @@ class Typer {
       }
       for (let step = 0; step < 5; step++) {
         const atom = member(step);
-        const type = this.fiveRing(atom, step, anion, between, ring.atoms);
+        const type = this.fiveRing(atom, step, anion, between);
         const earlier = types[atom]!;
         types[atom] = earlier === 0 || earlier === type ? type : merged(earlier, type);
       }
@@ -144,11 +151,12 @@ class Typer {
     return this.z(atom) === 7 && this.degree(atom) === 3 && this.orderSum(atom) === 4 && this.terminals(atom, 8) === 0;
   }
 
-  private fiveRing(atom: number, step: number, anion: boolean, between: number, ring: readonly number[]): number {
+  private fiveRing(atom: number, step: number, anion: boolean, between: number): number {
     const z = this.z(atom);
     const alpha = step === 1 || step === 4;
     if (z === 6) {
-      if (between >= 0) return atom === between ? 80 : 78;
+      if (this.cationCentre(atom) > 0) return 80;
+      if (between >= 0) return 78;
       if (anion) return 78;
       return alpha ? 63 : 64;
     }
@@ -164,7 +172,7 @@ class Typer {
       return 81;
     }
     if (anion) return 76;
-    if (between >= 0 && !ring.includes(-1)) return 79;
+    if (between >= 0) return 79;
     return alpha ? 65 : 66;
   }
 
@@ -257,7 +265,7 @@ class Typer {
     for (const n of this.neighbours(atom)) {
       if (this.z(n) !== 7) continue;
       if (this.order(atom, n) === 2) {
-        if (this.degree(n) !== 3 || this.terminals(n, 8) > 0 || this.inAromatic(n)) return 0;
+        if (this.degree(n) !== 3 || this.terminals(n, 8) > 0 || this.inSix(n)) return 0;
         positive++;
         nitrogens++;
       } else if (this.degree(n) === 3 && this.orderSum(n) === 3) nitrogens++;
@@ -265,14 +273,13 @@ class Typer {
     return positive === 1 && nitrogens >= 2 ? nitrogens : 0;
   }
 
-  private aromaticAtoms: Uint8Array | null = null;
-
   private inAromatic(atom: number): boolean {
-    if (this.aromaticAtoms === null) {
-      this.aromaticAtoms = new Uint8Array(this.molecule.atomCount);
-      for (const ring of aromaticity(this.molecule).rings) for (const member of ring.atoms) this.aromaticAtoms[member] = 1;
-    }
-    return this.aromaticAtoms[atom] === 1;
+    return this.ringSizes[atom] !== 0;
+  }
+
+  /** In an aromatic ring of six and in none of five. */
+  private inSix(atom: number): boolean {
+    return this.ringSizes[atom] === 6;
   }
 
   private nitrogen(atom: number): number {
@@ -322,6 +329,10 @@ class Typer {
       if ((z === 16 || z === 15) && this.terminals(n, 8) >= 2) return 43;
       if (z === 6 && this.count(n, 7, 3) > 0) return 43;
     }
+    for (const n of this.neighbours(atom)) {
+      const nitrogens = this.cationCentre(n);
+      if (nitrogens > 0) return nitrogens === 3 ? 56 : 55;
+    }
     let conjugated = false;
     for (const n of this.neighbours(atom)) {
       const z = this.z(n);
@@ -337,8 +348,6 @@ class Typer {
     }
     for (const n of this.neighbours(atom)) {
       if (this.z(n) !== 6 || this.inAromatic(n)) continue;
-      const nitrogens = this.cationCentre(n);
-      if (nitrogens > 0) return nitrogens === 3 ? 56 : 55;
       if (this.count(n, 6, 2) + this.count(n, 7, 2) + this.count(n, 15, 2) + this.count(n, 6, 3) > 0) conjugated = true;
     }
     return conjugated ? 40 : 8;
@@ -362,6 +371,7 @@ class Typer {
         if (oxygens === 2) return 32;
         return double ? 7 : 35;
       case 7:
+        if (!double && this.degree(centre) === 3 && this.orderSum(centre) === 3) return 35;
         return double && oxygens < 2 ? 7 : 32;
       case 15:
       case 17:
