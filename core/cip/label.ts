@@ -10,6 +10,7 @@ import { type AuxiliaryDescriptor, centreLetter, labelAuxiliary, pairLetter } fr
 import { Branches } from './branches.ts';
 import { Digraph, DigraphLimitError } from './digraph.ts';
 import { Letter, descriptorOf } from './letter.ts';
+import { labelPlane } from './plane.ts';
 import {
   NO_NODE,
   type Ranking,
@@ -43,6 +44,7 @@ export class Labeller {
   readonly view: Branches;
   private readonly scratch: Branches;
   private readonly undecided: readonly number[];
+  private readonly settings: Settings;
   private readonly labileToo: boolean;
   private classes: Int32Array | null = null;
   private readonly beyondLimit = new Set<string>();
@@ -55,6 +57,7 @@ export class Labeller {
     this.scratch = new Branches(this.digraph);
     this.table = unitTable(molecule, units, settings.labileToo);
     this.labileToo = settings.labileToo;
+    this.settings = settings;
     this.undecided = units.flatMap((unit, i) =>
       unit.sense === 0 && (settings.labileToo || unit.labile === null) ? [i] : [],
     );
@@ -70,10 +73,12 @@ export class Labeller {
   }
 
   private labelStable(index: number, unit: StereoUnit): LabelledUnit | null {
-    if (unit.kind === 'helix' || unit.kind === 'plane') return labelByTurn(unit);
+    if (unit.kind === 'helix') return labelByTurn(unit);
     if (this.isBeyondLimit(unit)) return this.unfinished(unit);
     try {
-      return this.labelByRank(index, unit);
+      return unit.kind === 'plane'
+        ? labelPlane(this.digraph.molecule, unit, this.settings)
+        : this.labelByRank(index, unit);
     } catch (error) {
       if (!(error instanceof DigraphLimitError)) throw error;
       this.classes ??= symmetryClasses(this.digraph.molecule);

@@ -27,7 +27,7 @@ export function unitTable(molecule: Molecule, units: readonly StereoUnit[], labi
     if (!counts(unit)) return;
     if (unit.kind === 'centre') {
       centreAt[unit.atoms[0]!] = index;
-    } else if (unit.ends.length === 2) {
+    } else if (unit.kind !== 'helix' && unit.kind !== 'plane') {
       const first = unit.ends[0]!.atom;
       const second = unit.ends[1]!.atom;
       const path = unitPath(molecule, first, second);

@@ -46,7 +46,8 @@ export function arrangementOf(intended: IntendedUnit, image: Int32Array, model: 
   const found = model.units[at]!;
   if (found.unit.sense === 0) return found.unit.state === 'flat' ? Arrangement.flat : Arrangement.missing;
   let parity: 1 | -1 | 0;
-  if (intended.kind === 'helix' || intended.kind === 'plane') parity = 1;
+  if (intended.kind === 'helix') parity = 1;
+  else if (intended.kind === 'plane') parity = planeParity(intended, found, image);
   else if (intended.ends.length === 1) {
     parity = permutationParity(intended.ligands[0]!, found.ligands[0]!, image);
   } else {
@@ -58,6 +59,16 @@ export function arrangementOf(intended: IntendedUnit, image: Int32Array, model: 
   }
   if (parity === 0) return Arrangement.missing;
   return intended.unit.sense * parity === found.unit.sense ? Arrangement.same : Arrangement.inverted;
+}
+
+/** A plane's sense changes with the end and with the side from which it is taken (`perception/unit.ts`). */
+function planeParity(intended: NodeUnit, found: NodeUnit, image: Int32Array): 1 | -1 | 0 {
+  const swapped = found.ends[0] !== image[intended.ends[0]!];
+  const sides = found.ligands[swapped ? 1 : 0]!;
+  const first = imageOf(intended.ligands[0]![0]!, image);
+  const otherSide = first === sides[1];
+  if (!otherSide && first !== sides[0]) return 0;
+  return swapped === otherSide ? 1 : -1;
 }
 
 function multiply(a: 1 | -1 | 0, b: 1 | -1 | 0): 1 | -1 | 0 {

@@ -7,6 +7,7 @@ import { type PerceptionContext, perceptionContext } from './context.ts';
 import { doubleBondCandidates, measurePair, type PairCandidate } from './double-bonds.ts';
 import { drawnCentre, drawnPair } from './drawing.ts';
 import { helixCandidates, measureHelix } from './helices.ts';
+import { measurePlane, planeCandidates } from './planes.ts';
 import { prune } from './pruning.ts';
 import { type StatedTable, statedCentre, statedPair, statedTable } from './stated.ts';
 import type { StereoUnit, UnitEnd } from './unit.ts';
@@ -38,6 +39,7 @@ export function perceiveUnits(molecule: Molecule, settings: Settings): Perceived
     .map(candidate => measured(context, candidate, stated))
     .filter(unit => !isHeldBySymmetry(context, unit));
   for (const helix of helixCandidates(context)) units.push(measureHelix(context, helix));
+  for (const plane of planeCandidates(context)) units.push(measurePlane(context, plane));
   return { units, warnings: [] };
 }
 

@@ -32,7 +32,10 @@ export interface UnitEnd {
  * - `double-bond` and extended cis-trans `cumulene`: 1 when the first ligand of each end lie on the same side, -1 on opposite sides.
  * - extended tetrahedral `cumulene`, `axis`: 1 when the torsion first ligand – end – end – first ligand is positive
  *   (clockwise from the front to the rear, P once ranked), -1 when negative.
- * - `helix`, `plane`: 1 for P (clockwise), -1 for M.
+ * - `helix`: 1 for P (clockwise), -1 for M.
+ * - `plane`: the sign of the torsion pilot atom – plane atom – ring atom – first ligand at the first end; each end lists its two
+ *   ring neighbours, the plane atom and the pilot atom, and the first neighbours of both ends lie on one side. It changes
+ *   sign with the end and with the neighbour from which it is taken; 1 is P for the ones of higher priority.
  */
 export interface StereoUnit {
   readonly kind: UnitKind;
