@@ -69,7 +69,7 @@ interface RingOpening {
 /** Organic subset and aromatic symbols, longest first. */
 const ORGANIC = /^(?:Cl|Br|[BCNOPSFI]|[bcnops]|\*)/u;
 const BRACKET =
-  /^\[(\d{0,4})(\*|[A-Z][a-z]?|as|se|te|[bcnops])(@(?:@|TH[12]|AL[12]|SP[1-3]|TB\d{1,2}|OH\d{1,2})?)?(H\d*)?(\+\+|--|[+-]\d{0,2}|\+\+\+|---)?(?::(\d+))?\]/u;
+  /^\[(\d{0,4})(\*|[A-Z][a-z]?|as|se|te|[bcnops])(@(?:@|TH[12]|AL[12]|SP[1-3]|TB\d{1,2}|OH\d{1,2})?)?(H\d?)?(\+\+|--|[+-]\d{0,2}|\+\+\+|---)?(?::(\d+))?\]/u;
 
 class Reader {
   readonly atoms: SmilesAtom[] = [];

@@ -296,6 +296,8 @@ describe('a bad SMILES says what is wrong and in which column', () => {
     ['C[Xx]', 2, /Xx/u],
     ['C[C', 2, /not closed/u],
     ['C[C@H2@]C', 2, /bracket/u],
+    // One digit of hydrogens, no more: a long number must not be taken for a count.
+    ['C[CH99999999]', 2, /CH99999999/u],
     ['C==C', 3, /two bonds/u],
     ['C=', 2, /nowhere/u],
     ['=C', 1, /without an atom/u],
