@@ -493,7 +493,6 @@ class OrderFinder {
       } else if (z === 8 && p.length === 1 && !this.anionic[i] && this.charges[i] === 0) need[i] = 1;
       else if (z === 16 && p.length === 1 && !this.anionic[i]) need[i] = 1;
       else if (z === 15 && p.length === 2) need[i] = 1;
-      else if (z === 8 && p.length === 2) late[i] = 2;
     }
     const edges: { i: number; j: number; score: number }[] = [];
     const gather = (allowed: (i: number) => boolean): void => {
@@ -511,20 +510,18 @@ class OrderFinder {
       edges.sort((x, y) => x.score - y.score || x.i - y.i || x.j - y.j);
     };
     gather(i => need[i]! > 0);
-    this.commitClear(edges, need);
-    gather(i => need[i]! > 0);
-    this.match(edges, need);
-    const open = (): boolean => need.some((each, i) => each === 2 && this.pi[i] === 0);
-    if (open()) {
-      // Amidinium, pyridinium and their kin: a flat three-coordinate nitrogen may take part, positively charged.
-      gather(i => need[i]! > 0 || late[i] === 1);
-      const wider = need.map((each, i) => (each === 0 && late[i] === 1 ? 1 : each));
-      this.match(edges, wider, true);
+    this.commitClear(edges);
+    // Amidinium, pyridinium and their kin: a flat three-coordinate nitrogen takes part where nothing else can.
+    gather(i => need[i]! > 0 || late[i] === 1);
+    const partner = matchRequired(this.n, need, edges);
+    for (let i = 0; i < this.n; i++) {
+      const j = partner[i]!;
+      if (j > i) this.set(i, j, 2);
     }
   }
 
   /** Double bonds that stand alone and are short: nothing else can claim their atoms. */
-  private commitClear(edges: readonly { i: number; j: number; score: number }[], need: Uint8Array): void {
+  private commitClear(edges: readonly { i: number; j: number; score: number }[]): void {
     const best = new Float64Array(this.n).fill(Infinity);
     const second = new Float64Array(this.n).fill(Infinity);
     for (const { i, j, score } of edges) {
@@ -537,22 +534,8 @@ class OrderFinder {
     }
     for (const { i, j, score } of edges) {
       if (score > 0.3 || this.pi[i]! > 0 || this.pi[j]! > 0) continue;
-      if (need[i] !== 2 && need[j] !== 2) continue;
       const clear = (atom: number): boolean => best[atom] === score && second[atom]! - score > 0.35;
       if (clear(i) && clear(j)) this.set(i, j, 2);
-    }
-  }
-
-  private match(
-    edges: readonly { i: number; j: number; score: number }[],
-    need: Uint8Array,
-    onlyIfBetter = false,
-  ): void {
-    const { partner } = matchRequired(this.n, need, edges, i => this.pi[i]! > 0);
-    void onlyIfBetter;
-    for (let i = 0; i < this.n; i++) {
-      const j = partner[i]!;
-      if (j > i) this.set(i, j, 2);
     }
   }
 
@@ -603,46 +586,74 @@ class OrderFinder {
   }
 }
 
-/** A matching that covers as many required atoms (need 2) as can be, drawing on optional ones (need 1) where that helps. */
+/**
+ * A matching that covers as many required atoms (need 2) as can be.
+ *
+ * Others are drawn in one at a time, optional ones (need 1) before the rest, those with the shortest bonds first, and only where one more
+ * required atom is covered by it: the sets of atoms that a matching can cover form a matroid, so that this greedy choice
+ * reaches the most (J. Edmonds & D. R. Fulkerson, J. Res. Natl Bur. Stand. 1965, 69B, 147).
+ */
 function matchRequired(
   n: number,
   need: Uint8Array,
   edges: readonly { i: number; j: number; score: number }[],
-  taken: (i: number) => boolean,
-): { partner: Int32Array } {
-  // Only atoms with an edge are passed on, renumbered in the order of the shortest bond: the matching starts with those.
+): Int32Array {
+  const partner = new Int32Array(n).fill(-1);
   const place = new Map<number, number>();
   const atoms: number[] = [];
-  for (const { i, j } of edges) {
-    for (const atom of [i, j]) {
-      if (place.has(atom) || taken(atom)) continue;
-      place.set(atom, atoms.length);
-      atoms.push(atom);
+  const groups: number[] = [];
+  const root = (k: number): number => {
+    let at = k;
+    while (groups[at] !== at) at = groups[at]!;
+    return at;
+  };
+  // Numbered in the order of the shortest bond: the matching starts with those.
+  const pairs = edges.map(({ i, j }): [number, number] => {
+    const [a, b] = [i, j].map(atom => {
+      let at = place.get(atom);
+      if (at === undefined) {
+        at = atoms.length;
+        place.set(atom, at);
+        atoms.push(atom);
+        groups.push(at);
+      }
+      return at;
+    }) as [number, number];
+    groups[root(a)] = root(b);
+    return [a, b];
+  });
+  const members = new Map<number, number[]>();
+  atoms.forEach((_, k) => {
+    const key = root(k);
+    const list = members.get(key);
+    if (list) list.push(k);
+    else members.set(key, [k]);
+  });
+  for (const [key, list] of members) {
+    const own = pairs.filter(([a]) => root(a) === key);
+    const needs = new Uint8Array(atoms.length);
+    for (const k of list) if (need[atoms[k]!] === 2) needs[k] = 1;
+    const run = (): { partner: Int32Array; open: number } => {
+      const matched = perfectMatching(
+        atoms.length,
+        needs,
+        own.filter(([a, b]) => needs[a] && needs[b]),
+      );
+      return { partner: matched.partner, open: matched.unmatched.length };
+    };
+    let best = run();
+    for (const k of [...list].sort((x, y) => need[atoms[y]!]! - need[atoms[x]!]! || x - y)) {
+      if (best.open === 0) break;
+      if (needs[k]) continue;
+      needs[k] = 1;
+      const wider = run();
+      if (wider.open < best.open) best = wider;
+      else needs[k] = 0;
+    }
+    for (const k of list) {
+      const other = best.partner[k]!;
+      if (other >= 0) partner[atoms[k]!] = atoms[other]!;
     }
   }
-  const partner = new Int32Array(n).fill(-1);
-  const pairs = edges.flatMap(({ i, j }): [number, number][] => {
-    const a = place.get(i);
-    const b = place.get(j);
-    return a === undefined || b === undefined ? [] : [[a, b]];
-  });
-  const run = (usable: (atom: number) => boolean): { partner: Int32Array; uncovered: number } => {
-    const needs = Uint8Array.from(atoms, atom => (usable(atom) ? 1 : 0));
-    const list = pairs.filter(([a, b]) => needs[a] && needs[b]);
-    const matched = perfectMatching(atoms.length, needs, list);
-    return {
-      partner: matched.partner,
-      uncovered: matched.unmatched.filter(k => need[atoms[k]!] === 2).length,
-    };
-  };
-  let best = run(atom => need[atom] === 2);
-  if (best.uncovered > 0) {
-    const wider = run(() => true);
-    if (wider.uncovered <= best.uncovered) best = wider;
-  }
-  for (let k = 0; k < atoms.length; k++) {
-    const other = best.partner[k]!;
-    if (other >= 0) partner[atoms[k]!] = atoms[other]!;
-  }
-  return { partner };
+  return partner;
 }
