@@ -1,6 +1,7 @@
 /** The Electron shell: one window on the built page, the host's calls over IPC, menus, dialogs and file associations. */
 import { app, BrowserWindow, dialog, ipcMain, Menu, protocol, session } from 'electron';
 import { join } from 'node:path';
+import { COMMANDS } from '../renderer/commands.ts';
 import type { HostEvent } from '../renderer/host.ts';
 import { DEMO_SWITCH, filesOf } from './arguments.ts';
 import { EVENT_CHANNEL } from './bridge.ts';
@@ -112,7 +113,7 @@ async function ready(): Promise<void> {
   listen(ipcMain, host, trustedSender, log);
   Menu.setApplicationMenu(
     Menu.buildFromTemplate(
-      menuTemplate(process.platform, [], {
+      menuTemplate(process.platform, COMMANDS, {
         command: id => {
           send({ type: 'command', command: id });
         },

@@ -37,6 +37,17 @@ export function accelerator(keys: string): string {
     .join('+');
 }
 
+/**
+ * The keys as the menu shows them, left to the page, which knows whether a text field has the keyboard.
+ *
+ * macOS takes every key that a menu shows for itself: letters alone are not shown there, so that they can be typed.
+ */
+function keysOf(command: MenuCommand, platform: NodeJS.Platform): MenuItemConstructorOptions {
+  if (command.keys === null) return {};
+  if (platform === 'darwin' && !/^(Ctrl|Alt)\+/u.test(command.keys)) return {};
+  return { accelerator: accelerator(command.keys), registerAccelerator: false };
+}
+
 /** The menu bar: the window's commands by menu, with the system's own items where people expect them. */
 export function menuTemplate(
   platform: NodeJS.Platform,
@@ -49,10 +60,7 @@ export function menuTemplate(
     items.push({
       id: command.id,
       label: command.label,
-      // Shown, but left to the page, which knows whether a text field has the keyboard.
-      ...(command.keys === null
-        ? {}
-        : { accelerator: accelerator(command.keys), registerAccelerator: false }),
+      ...keysOf(command, platform),
       click: () => {
         actions.command(command.id);
       },
