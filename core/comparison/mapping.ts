@@ -380,7 +380,7 @@ export function matchPart(
   const union = models.length === 1 ? models[0]! : joinFragments(models, fragments);
   const refuse = { match: null, difference: firstDifference(fragment, union) } as const;
   if (union.molecule.dimension !== 3) return refuse;
-  if (union.count > fragment.count || union.count < LEAST_PART * fragment.count) return refuse;
+  if (union.count >= fragment.count || union.count < LEAST_PART * fragment.count) return refuse;
   const pattern = initialColours(union, 'skeletal');
   const target = initialColours(fragment, 'skeletal');
   const complete = listsHydrogens(union);
@@ -392,9 +392,16 @@ export function matchPart(
     for (let v = 0; v < fragment.count; v++) {
       const w = back[v]!;
       if (w === -1) continue;
-      for (let k = fragment.start[v]!; k < fragment.start[v + 1]!; k++)
-        if (back[fragment.adjacent[k]!] !== -1) edges++;
-      if (complete && union.listedHydrogens[w]! > fragment.hydrogens[v]!) return false;
+      let beyond = 0;
+      for (let k = fragment.start[v]!; k < fragment.start[v + 1]!; k++) {
+        if (back[fragment.adjacent[k]!] === -1) beyond++;
+        else edges++;
+      }
+      // Listed hydrogens must be the intended ones, and must not fill the places of the missing atoms.
+      const listed = union.listedHydrogens[w]!;
+      const wanted = fragment.hydrogens[v]!;
+      if (complete && (listed > wanted || (beyond === 0 && fragment.elements[v] === 6 && listed < wanted)))
+        return false;
     }
     if (edges === union.adjacent.length) images.push(back);
     return images.length >= PARTIAL_LIMIT;
