@@ -241,12 +241,7 @@ class Reader {
     if (order !== 0 && opening.order !== 0 && order !== opening.order) {
       throw new SmilesError('the two ends of a ring closure have different bonds', at + 1);
     }
-    if (
-      this.bonds.some(
-        b =>
-          (b.first === atom && b.second === opening.atom) || (b.first === opening.atom && b.second === atom),
-      )
-    ) {
+    if (this.atoms[atom]!.order.includes(opening.atom)) {
       throw new SmilesError('a ring closure between two atoms that are bonded already', at + 1);
     }
     this.atoms[opening.atom]!.order[opening.slot] = atom;
