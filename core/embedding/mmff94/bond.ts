@@ -85,7 +85,7 @@ function empiricalBond(molecule: Molecule, typing: Typing, bond: number, paramet
       case 2:
         return 0.1;
       default:
-        return multiple === 1 || multiple === 2 ? 0.03 : multiple === 3 ? 0.08 : 0;
+        return multiple === 2 ? 0.03 : multiple === 3 ? 0.08 : 0;
     }
   };
   const contraction = zi === 1 || zj === 1 ? 0.05 : 0.085;

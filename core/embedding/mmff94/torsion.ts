@@ -68,7 +68,7 @@ function torsionType(
   // Torsions of rings of four, that no bond crosses.
   const crossed = bondBetween(molecule, i, k) >= 0 || bondBetween(molecule, j, l) >= 0;
   if (!crossed && bondBetween(molecule, i, l) >= 0) return [4, plain];
-  if (!crossed && inSaturatedFive(molecule, typing, atoms)) return [5, plain];
+  if (plain === 0 && !crossed && inSaturatedFive(molecule, typing, atoms)) return [5, 0];
   return [plain, plain === 2 ? 0 : plain];
 }
 

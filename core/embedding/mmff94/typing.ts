@@ -334,6 +334,7 @@ class Typer {
       if (nitrogens > 0) return nitrogens === 3 ? 56 : 55;
     }
     let conjugated = false;
+    let triazene = false;
     for (const n of this.neighbours(atom)) {
       const z = this.z(n);
       if (z === 6) {
@@ -343,14 +344,13 @@ class Typer {
         }
         if (this.count(n, 8, 2) + this.count(n, 16, 2) > 0) return 10;
       }
-      if (z === 7 && this.degree(n) === 2 && this.count(n, 6, 2) + this.count(n, 7, 2) > 0 && !this.inAromatic(n)) return 10;
-      if (z === 7 && this.inAromatic(n)) continue;
+      if (z === 7 && this.degree(n) === 2 && this.count(n, 7, 2) > 0 && !this.inAromatic(n)) triazene = true;
     }
     for (const n of this.neighbours(atom)) {
       if (this.z(n) !== 6 || this.inAromatic(n)) continue;
       if (this.count(n, 6, 2) + this.count(n, 7, 2) + this.count(n, 15, 2) + this.count(n, 6, 3) > 0) conjugated = true;
     }
-    return conjugated ? 40 : 8;
+    return conjugated ? 40 : triazene ? 10 : 8;
   }
 
   private oxygen(atom: number): number {
