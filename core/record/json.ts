@@ -28,6 +28,8 @@ export interface UnitRecord {
   readonly state: UnitState;
   readonly labile?: string;
   readonly occupancy?: number;
+  /** What the letter may be taken to say; absent where nothing limits it. */
+  readonly scope?: 'absolute' | 'relative' | 'racemic';
   readonly ranking: readonly RankingRecord[];
   /** Å³, in order of priority; negative is R. */
   readonly signedVolume: number | null;
