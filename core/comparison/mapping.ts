@@ -280,7 +280,7 @@ function matchSkeletons(
   };
   const symmetry = intended.symmetry('skeletal');
   const empty = unitTable([], model.count);
-  const likeliest = searchMappings([], symmetry, base, empty, evidence);
+  const likeliest = searchMappings([], symmetry, base, empty, evidence, intended.level('skeletal').colours);
   const mapping = likeliest.image;
   const plain = (warnings: string[]): MatchResult => ({
     match: { intended, model, level: 'skeletal', base, placements: null, supply: [], evidence, warnings },
@@ -523,6 +523,7 @@ export function searchMatch(match: FragmentMatch, model: UnitTable, mirrorAlways
     base,
     model,
     level === 'skeletal' ? evidence : null,
+    intended.level(level).colours,
     mirrorAlways,
   );
 }

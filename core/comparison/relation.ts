@@ -1,7 +1,7 @@
 /** The relation of a found molecule to the intended one, tested over all mappings that the symmetry of the molecule allows. */
 import type { Relation } from '../docket.ts';
 import type { Symmetry } from './symmetry.ts';
-import type { IntendedUnit, UnitTable } from './units.ts';
+import type { IntendedUnit, NodeUnit, UnitTable } from './units.ts';
 import { Arrangement, arrangementOf, nodesOf } from './verdict.ts';
 
 /** Most mappings looked at in one search; symmetric molecules of ordinary size need far fewer. */
@@ -259,6 +259,61 @@ export function mixedGroups(
   return new Set([...seen].filter(([, both]) => both === 3).map(([group]) => group));
 }
 
+/** The sense of a centre with its ligands in the order of their colours, and the colours; null where two are alike. */
+function colouredSense(
+  unit: NodeUnit,
+  colourOf: (node: number) => number,
+): { key: string; sense: number } | null {
+  const [end] = unit.ends;
+  const [ligands] = unit.ligands;
+  if (unit.kind !== 'centre' || end === undefined || !ligands) return null;
+  const colours = ligands.map(colourOf);
+  let inversions = 0;
+  for (let i = 0; i < colours.length; i++) {
+    for (let j = i + 1; j < colours.length; j++) {
+      if (colours[i] === colours[j]) return null;
+      if (colours[i]! > colours[j]!) inversions++;
+    }
+  }
+  return { key: `${colourOf(end)}`, sense: inversions % 2 === 0 ? unit.unit.sense : -unit.unit.sense };
+}
+
+/**
+ * A number of inverted units below which no mapping can come: among centres that symmetry exchanges, each with four
+ * different ligands, as many must be inverted as the counts of either hand differ.
+ */
+function leastInverted(
+  units: readonly IntendedUnit[],
+  colours: Int32Array,
+  base: Int32Array,
+  model: UnitTable,
+  mirrored = false,
+): number {
+  const back = new Map<number, number>();
+  base.forEach((w, v) => back.set(w, colours[v]!));
+  const wanted = new Map<string, number>();
+  const asked = new Map<string, number>();
+  for (const unit of units) {
+    const sense = unit.group === -1 ? colouredSense(unit, node => (node < 0 ? node : colours[node]!)) : null;
+    if (!sense) continue;
+    asked.set(sense.key, (asked.get(sense.key) ?? 0) + 1);
+    wanted.set(sense.key, (wanted.get(sense.key) ?? 0) + (mirrored ? -sense.sense : sense.sense));
+  }
+  const found = new Map<string, number>();
+  const present = new Map<string, number>();
+  for (const unit of model.units) {
+    const sense = colouredSense(unit, node => (node < 0 ? node : (back.get(node) ?? 0)));
+    if (!sense || sense.sense === 0) continue;
+    present.set(sense.key, (present.get(sense.key) ?? 0) + 1);
+    found.set(sense.key, (found.get(sense.key) ?? 0) + sense.sense);
+  }
+  let least = 0;
+  for (const [key, sum] of wanted) {
+    if (asked.get(key) === present.get(key)) least += Math.abs(sum - (found.get(key) ?? 0)) / 2;
+  }
+  return least;
+}
+
 /**
  * Searches all mappings for the one that leaves the fewest inverted units and, where some are inverted or
  * `mirrorAlways` is set, for a match with the mirror image.
@@ -269,37 +324,57 @@ export function searchMappings(
   base: Int32Array,
   model: UnitTable,
   evidence: BondingEvidence | null,
+  colours: Int32Array,
   mirrorAlways = false,
 ): MappingSearch {
   const walk = new Walk(units, symmetry, base, model, evidence);
-  let best: Tally = {
-    bonding: Number.POSITIVE_INFINITY,
-    inverted: Number.POSITIVE_INFINITY,
-    undecided: Number.POSITIVE_INFINITY,
-  };
-  let image: Int32Array = base;
+  const unbounded = Number.POSITIVE_INFINITY;
+  let best: Tally = { bonding: unbounded, inverted: unbounded, undecided: unbounded };
+  let image: Int32Array | null = null;
   let arrangements: Arrangement[] = [];
   let equivalent = 0;
   let choices = new Map<string, InvertedChoice>();
-  walk.run(
-    false,
-    () => best,
-    (tally, found, outcome) => {
-      if (compareTallies(tally, best) < 0) {
-        best = { ...tally };
-        image = found;
-        arrangements = [...outcome];
-        equivalent = 0;
-        choices = new Map();
-      }
-      equivalent++;
-      if (tally.inverted > 0) addChoice(choices, units, invertedUnits(units, outcome), found);
-      return equivalent >= EQUIVALENT_LIMIT && tally.bonding + tally.inverted + tally.undecided === 0;
-    },
-  );
-  let complete = !walk.exhausted;
+  /** Looks for mappings no worse than `best`; `least` is a number of inverted units that is known to be the least. */
+  const look = (least: number): void => {
+    walk.run(
+      false,
+      () => best,
+      (tally, found, outcome) => {
+        if (image === null || compareTallies(tally, best) < 0) {
+          best = { ...tally };
+          image = found;
+          arrangements = [...outcome];
+          equivalent = 0;
+          choices = new Map();
+        }
+        equivalent++;
+        if (tally.inverted > 0) addChoice(choices, units, invertedUnits(units, outcome), found);
+        return (
+          equivalent >= EQUIVALENT_LIMIT && tally.bonding + tally.undecided === 0 && tally.inverted <= least
+        );
+      },
+    );
+  };
+  let complete = true;
+  if (evidence || symmetry.levels.length === 0) {
+    look(0);
+    complete = !walk.exhausted;
+  } else {
+    // Deepening: with a tight bound, branches are given up at once, however large the symmetry.
+    const most = units.length;
+    for (let bound = leastInverted(units, colours, base, model); bound <= most && image === null; bound++) {
+      best = { bonding: 0, inverted: bound, undecided: unbounded };
+      look(bound);
+      // A search cut short after it found something has only left equivalents uncounted.
+      if (walk.exhausted && image === null) complete = false;
+    }
+  }
   let mirrored = false;
-  if ((best.inverted > 0 || mirrorAlways) && best.undecided === 0) {
+  const mayMirror =
+    (best.inverted > 0 || mirrorAlways) &&
+    best.undecided === 0 &&
+    leastInverted(units, colours, base, model, true) === 0;
+  if (mayMirror) {
     const bound = { bonding: best.bonding, inverted: 0, undecided: 0 };
     walk.run(
       true,
@@ -312,7 +387,7 @@ export function searchMappings(
     if (walk.exhausted && !mirrored) complete = false;
   }
   return {
-    image,
+    image: image ?? base,
     arrangements,
     inverted: best.inverted,
     undecided: best.undecided,
