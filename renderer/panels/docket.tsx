@@ -1,0 +1,165 @@
+/** The docket: every stereogenic unit of the model with glyph, letter, atoms and verdict; and the judgement of the chosen one. */
+import { type KeyboardEvent, type ReactElement, useEffect, useRef } from 'react';
+import { unitName } from '../caption.ts';
+import type { CommandId } from '../commands.ts';
+import { isDoubtful } from '../controller.ts';
+import { Glyph } from '../glyph.tsx';
+import { type Mark, judgementOf, unitKey } from '../store.ts';
+import { measure, TEXT } from '../text.ts';
+import { useAppState, useController } from '../use-store.ts';
+
+export function DocketPanel(): ReactElement {
+  const controller = useController();
+  const state = useAppState();
+  const { model, unit } = state;
+  const list = useRef<HTMLUListElement>(null);
+  const units = model?.docket?.units ?? [];
+
+  useEffect(() => {
+    list.current?.querySelector('[aria-selected="true"]')?.scrollIntoView({ block: 'nearest' });
+  }, [unit, model]);
+
+  const onKey = (event: KeyboardEvent): void => {
+    const steps: Record<string, number> = {
+      ArrowDown: unit + 1,
+      ArrowUp: unit - 1,
+      Home: 0,
+      End: units.length - 1,
+    };
+    const next = steps[event.key];
+    if (next === undefined || event.shiftKey) return;
+    event.preventDefault();
+    controller.selectUnit(Math.min(units.length - 1, Math.max(0, next)));
+  };
+
+  return (
+    <section className="panel docket" aria-labelledby="docket-title">
+      <header className="panel-head">
+        <h2 id="docket-title">{TEXT.docket}</h2>
+        <span className="fine">{units.length}</span>
+      </header>
+      {units.length === 0 && <p className="fine padded">{TEXT.noUnits}</p>}
+      {units.length > 0 && (
+        <ul
+          ref={list}
+          role="listbox"
+          aria-labelledby="docket-title"
+          aria-activedescendant={`unit-${unit}`}
+          tabIndex={0}
+          onKeyDown={onKey}
+          className="units"
+        >
+          {units.map((labelled, u) => {
+            const shown = model?.verdicts[u];
+            const verdict = shown?.verdict ?? null;
+            const judgement = model ? judgementOf(state, unitKey(model, u, state.files)) : null;
+            const doubtful = model !== null && isDoubtful(model, u);
+            return (
+              <li
+                key={u}
+                id={`unit-${u}`}
+                role="option"
+                aria-selected={u === unit}
+                className={`unit${doubtful ? ' doubtful' : ''}`}
+                onClick={() => controller.selectUnit(u)}
+              >
+                <Glyph
+                  descriptor={labelled.descriptor}
+                  state={labelled.unit.state}
+                  firmness={labelled.unit.firmness}
+                  verdict={verdict}
+                />
+                <span className="letter">{labelled.descriptor ?? '–'}</span>
+                <span className="unit-name">
+                  {model?.molecule ? unitName(model.molecule, labelled) : ''}
+                  <span className="fine">
+                    {labelled.unit.kind === 'centre' ? '' : ` ${TEXT.kinds[labelled.unit.kind]}`}
+                    {labelled.unit.labile === null ? '' : ' labile'}
+                  </span>
+                </span>
+                <span className="unit-firmness" title="Firmness">
+                  {labelled.unit.firmness === null ? '' : measure(labelled.unit.firmness, 2)}
+                </span>
+                <span className={`verdict verdict-${verdict ?? labelled.unit.state}`}>
+                  {verdict !== null && verdict !== 'open'
+                    ? TEXT.verdict[verdict]
+                    : labelled.unit.state === 'clear'
+                      ? verdict === 'open'
+                        ? TEXT.verdict.open
+                        : ''
+                      : labelled.unit.state}
+                </span>
+                <span className="unit-mark">{judgement?.mark ? MARK_SIGNS[judgement.mark] : ''}</span>
+                {judgement?.mark && <span className="said">{TEXT.marks[judgement.mark]}</span>}
+              </li>
+            );
+          })}
+        </ul>
+      )}
+      {model && model.absent.length > 0 && (
+        <ul className="absent" aria-label="Intended units that the model lacks">
+          {model.absent.map((unit, k) => (
+            <li key={k}>
+              <Glyph descriptor={null} state="unspecified" firmness={null} verdict="missing" />
+              <span>
+                intended {unit.intended ?? TEXT.kinds[unit.kind]}: {TEXT.verdict[unit.verdict]}
+              </span>
+            </li>
+          ))}
+        </ul>
+      )}
+      {units.length > 0 && <JudgementForm />}
+    </section>
+  );
+}
+
+const MARK_SIGNS: Readonly<Record<Mark, string>> = { accepted: '✓', rejected: '✗', question: '?' };
+
+const MARKS: readonly { readonly mark: Mark; readonly command: CommandId; readonly label: string }[] = [
+  { mark: 'accepted', command: 'accept', label: 'Accept' },
+  { mark: 'rejected', command: 'reject', label: 'Reject' },
+  { mark: 'question', command: 'question', label: 'Question' },
+];
+
+function JudgementForm(): ReactElement | null {
+  const controller = useController();
+  const state = useAppState();
+  const { model, unit, files } = state;
+  const field = useRef<HTMLInputElement>(null);
+  useEffect(() => {
+    controller.onRemark(() => field.current?.focus());
+    return () => controller.onRemark(null);
+  }, [controller]);
+  const labelled = model?.docket?.units[unit];
+  if (!model?.molecule || !labelled) return null;
+  const key = unitKey(model, unit, files);
+  const { mark, remark } = judgementOf(state, key);
+  return (
+    <div className="judgement">
+      <div role="group" aria-label={TEXT.markLegend} className="marks">
+        {MARKS.map(one => (
+          <button
+            key={one.mark}
+            type="button"
+            aria-pressed={mark === one.mark}
+            onClick={() => controller.run(one.command)}
+          >
+            <span aria-hidden="true">{MARK_SIGNS[one.mark]}</span> {one.label}
+          </button>
+        ))}
+      </div>
+      <input
+        key={`${key}|${remark}`}
+        ref={field}
+        defaultValue={remark}
+        placeholder={TEXT.remark}
+        aria-label={TEXT.remarkOf(unitName(model.molecule, labelled))}
+        maxLength={2000}
+        onBlur={event => controller.judge({ remark: event.currentTarget.value })}
+        onKeyDown={event => {
+          if (event.key === 'Enter' || event.key === 'Escape') event.currentTarget.blur();
+        }}
+      />
+    </div>
+  );
+}

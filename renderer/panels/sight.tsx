@@ -1,0 +1,174 @@
+/** The sight with its caption: the canvas, the dial over it, and the sentence that says what one looks at. */
+import { type KeyboardEvent, type PointerEvent, type ReactElement, useEffect, useMemo, useRef } from 'react';
+import { caption, unitName } from '../caption.ts';
+import { Glyph } from '../glyph.tsx';
+import { type SightContent, SightView } from '../sight/view.ts';
+import { measure, TEXT } from '../text.ts';
+import { useAppState, useController } from '../use-store.ts';
+
+/** Radians for one px of dragging, and for one press of an arrow key. */
+const DRAG = 0.009;
+const PRESS = 0.12;
+
+export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
+  const controller = useController();
+  const state = useAppState();
+  const { model, unit, side, preferences, lit } = state;
+  const frame = useRef<HTMLDivElement>(null);
+  const canvas = useRef<HTMLCanvasElement>(null);
+  const overlay = useRef<SVGSVGElement>(null);
+  const view = useRef<SightView | null>(null);
+  const labelled = model?.docket?.units[unit] ?? null;
+  const shown = model?.verdicts[unit] ?? null;
+  const molecule = model?.molecule ?? null;
+  const inSpace = molecule !== null && molecule.dimension === 3;
+  const words = molecule && labelled ? caption(molecule, labelled, shown, side) : '';
+  const content = useMemo<SightContent | null>(
+    () => (molecule && inSpace ? { molecule, labelled, caption: words } : null),
+    [molecule, inSpace, labelled, words],
+  );
+
+  useEffect(() => {
+    if (!canvas.current || !overlay.current || !frame.current) return;
+    const made = new SightView(canvas.current, overlay.current, {
+      onPick: atom => controller.light(atom),
+      onSide: next => controller.store.dispatch({ type: 'side', side: next }),
+    });
+    view.current = made;
+    controller.attachSight(made);
+    const box = frame.current;
+    const watcher = new ResizeObserver(() => made.resize(box.clientWidth, box.clientHeight));
+    watcher.observe(box);
+    made.resize(box.clientWidth, box.clientHeight);
+    return () => {
+      watcher.disconnect();
+      controller.attachSight(null);
+      made.dispose();
+      view.current = null;
+    };
+  }, [controller]);
+
+  useEffect(() => {
+    const still = !preferences.motion || matchMedia('(prefers-reduced-motion: reduce)').matches;
+    const { hydrogens, labels } = preferences;
+    view.current?.setLook({ dark, hydrogens, labels, motion: !still, lit });
+  }, [dark, preferences, lit]);
+
+  useEffect(() => {
+    view.current?.show(content);
+  }, [content]);
+
+  const last = useRef<{ x: number; y: number; moved: boolean } | null>(null);
+  const local = (event: PointerEvent): { x: number; y: number } => {
+    const box = frame.current!.getBoundingClientRect();
+    return { x: event.clientX - box.left, y: event.clientY - box.top };
+  };
+  const onDown = (event: PointerEvent): void => {
+    if (event.button !== 0) return;
+    event.currentTarget.setPointerCapture(event.pointerId);
+    last.current = { ...local(event), moved: false };
+  };
+  const onMove = (event: PointerEvent): void => {
+    const from = last.current;
+    if (!from) return;
+    const to = local(event);
+    if (!from.moved && Math.hypot(to.x - from.x, to.y - from.y) < 4) return;
+    view.current?.orbit((to.x - from.x) * DRAG, (to.y - from.y) * DRAG);
+    last.current = { ...to, moved: true };
+  };
+  const onUp = (event: PointerEvent): void => {
+    const from = last.current;
+    last.current = null;
+    if (from && !from.moved) view.current?.pick(local(event).x, local(event).y);
+  };
+  const onKey = (event: KeyboardEvent): void => {
+    if (event.shiftKey || event.ctrlKey || event.metaKey || event.altKey) return;
+    const turns: Record<string, [number, number]> = {
+      ArrowLeft: [-PRESS, 0],
+      ArrowRight: [PRESS, 0],
+      ArrowUp: [0, -PRESS],
+      ArrowDown: [0, PRESS],
+    };
+    const turn = turns[event.key];
+    if (!turn) return;
+    event.preventDefault();
+    view.current?.orbit(...turn);
+  };
+
+  useEffect(() => {
+    const box = frame.current;
+    if (!box) return;
+    const onWheel = (event: WheelEvent): void => {
+      event.preventDefault();
+      view.current?.zoom(Math.exp(event.deltaY * 0.0012));
+    };
+    box.addEventListener('wheel', onWheel, { passive: false });
+    return () => box.removeEventListener('wheel', onWheel);
+  }, []);
+
+  return (
+    <section className="sight" aria-label={TEXT.sight}>
+      <div
+        ref={frame}
+        className={`sight-frame${inSpace ? '' : ' sight-none'}`}
+        role="application"
+        aria-label={`${TEXT.sight}. ${TEXT.sightHelp}`}
+        tabIndex={0}
+        onPointerDown={onDown}
+        onPointerMove={onMove}
+        onPointerUp={onUp}
+        onKeyDown={onKey}
+      >
+        <canvas ref={canvas} aria-hidden="true" />
+        <svg ref={overlay} role="img" aria-label={words} data-side={side} />
+        {molecule && labelled && (
+          <div className="sight-title">
+            <Glyph
+              descriptor={labelled.descriptor}
+              state={labelled.unit.state}
+              firmness={labelled.unit.firmness}
+              verdict={shown?.verdict ?? null}
+              size={44}
+            />
+            <span className="sight-letter">{labelled.descriptor ?? '–'}</span>
+            <span className="sight-unit">
+              <b>{unitName(molecule, labelled)}</b>
+              <span>{TEXT.kinds[labelled.unit.kind]}</span>
+            </span>
+          </div>
+        )}
+        {side !== 'sight' && inSpace && labelled && (
+          <button type="button" className="side-note" onClick={() => controller.run('sight')}>
+            {side === 'far' ? TEXT.farSide : 'turned'} · return to the sight <kbd>S</kbd>
+          </button>
+        )}
+        {molecule && !inSpace && <p className="sight-message">{TEXT.noSpace}</p>}
+        {model?.error && (
+          <div className="sight-message" role="alert">
+            <b>{TEXT.unreadable(model.entry, model.error.line)}</b>
+            <span>{model.error.message}.</span>
+          </div>
+        )}
+      </div>
+      <p className="caption">
+        {words}
+        {model?.warnings.map(text => (
+          <span key={text} className="warning">
+            {' '}
+            {text}.
+          </span>
+        ))}
+        {model?.difference ? <span className="warning"> {model.difference}.</span> : null}
+        {labelled && model && (model.distorted[unit] ?? null) !== null ? (
+          <span className="warning"> Distorted: firmness {measure(model.distorted[unit]!, 2)} expected.</span>
+        ) : null}
+        {labelled?.warnings.map(text => (
+          <span key={text} className="warning">
+            {' '}
+            {text}.
+          </span>
+        ))}
+      </p>
+    </section>
+  );
+}

@@ -1,0 +1,262 @@
+/** Atoms and bonds as ray-cast impostors: exact circles and rods from a few triangles each, in flat ink with a paper halo that tells near from far. */
+import {
+  BufferAttribute,
+  Color,
+  GLSL3,
+  InstancedBufferAttribute,
+  InstancedBufferGeometry,
+  Mesh,
+  RawShaderMaterial,
+  Vector2,
+} from 'three';
+
+/** One disc. Lengths in Å; `strength` 1 for the unit's own atoms, towards 0 for what recedes. */
+export interface Ball {
+  readonly x: number;
+  readonly y: number;
+  readonly z: number;
+  readonly radius: number;
+  readonly colour: number;
+  readonly strength: number;
+}
+
+/** One rod between two points, in one colour. */
+export interface Rod {
+  readonly from: readonly [number, number, number];
+  readonly to: readonly [number, number, number];
+  readonly radius: number;
+  readonly colour: number;
+  readonly strength: number;
+}
+
+/** Width of the ink line around a thing, and of the paper halo outside it, Å. */
+const LINE = 0.035;
+const HALO = 0.075;
+
+const SHARED = /* glsl */ `
+  precision highp float;
+  uniform mat4 projectionMatrix;
+  uniform vec3 paper;
+  uniform vec3 ink;
+  uniform vec2 depthRange;
+  uniform float line;
+  uniform float halo;
+`;
+
+const TONE = /* glsl */ `
+  float depthOf(vec3 p) {
+    vec4 clip = projectionMatrix * vec4(p, 1.0);
+    return 0.5 * clip.z / clip.w + 0.5;
+  }
+  vec3 tone(vec3 colour, float strength, float depth) {
+    float far = smoothstep(depthRange.x, depthRange.y, depth);
+    return mix(paper, colour, strength * (1.0 - 0.55 * far));
+  }
+`;
+
+const BALL_VERTEX = /* glsl */ `
+  ${SHARED}
+  uniform mat4 modelViewMatrix;
+  in vec3 position;
+  in vec4 sphere;
+  in vec4 look;
+  out vec3 vPoint;
+  flat out vec4 vSphere;
+  flat out vec4 vLook;
+  void main() {
+    vec3 c = (modelViewMatrix * vec4(sphere.xyz, 1.0)).xyz;
+    float r = sphere.w + halo;
+    float d2 = dot(c, c);
+    float k = r * sqrt(d2 / max(d2 - r * r, 1e-4));
+    vec3 w = normalize(c);
+    vec3 u = normalize(cross(w, vec3(0.0, 1.0, 0.0)));
+    vec3 v = cross(u, w);
+    vPoint = c + k * (position.x * u + position.y * v);
+    vSphere = vec4(c, sphere.w);
+    vLook = look;
+    gl_Position = projectionMatrix * vec4(vPoint, 1.0);
+  }
+`;
+
+const BALL_FRAGMENT = /* glsl */ `
+  ${SHARED}
+  ${TONE}
+  in vec3 vPoint;
+  flat in vec4 vSphere;
+  flat in vec4 vLook;
+  out vec4 fragment;
+  void main() {
+    vec3 ray = normalize(vPoint);
+    float along = dot(ray, vSphere.xyz);
+    float off = sqrt(max(dot(vSphere.xyz, vSphere.xyz) - along * along, 0.0));
+    if (off > vSphere.w + halo) discard;
+    vec3 hit;
+    if (off <= vSphere.w) {
+      hit = ray * (along - sqrt(vSphere.w * vSphere.w - off * off));
+      bool edge = off > vSphere.w - line;
+      fragment = vec4(tone(edge ? ink : vLook.rgb, vLook.a, -hit.z), 1.0);
+    } else {
+      hit = ray * (along + 0.9);
+      fragment = vec4(paper, 1.0);
+    }
+    gl_FragDepth = depthOf(hit);
+  }
+`;
+
+const ROD_VERTEX = /* glsl */ `
+  ${SHARED}
+  uniform mat4 modelViewMatrix;
+  in vec3 position;
+  in vec4 start;
+  in vec3 end;
+  in vec4 look;
+  out vec3 vPoint;
+  flat out vec3 vStart;
+  flat out vec3 vAxis;
+  flat out vec2 vSize;
+  flat out vec4 vLook;
+  void main() {
+    vec3 a = (modelViewMatrix * vec4(start.xyz, 1.0)).xyz;
+    vec3 b = (modelViewMatrix * vec4(end, 1.0)).xyz;
+    float len = max(length(b - a), 1e-4);
+    vec3 w = (b - a) / len;
+    vec3 u = normalize(cross(w, abs(w.x) < 0.7 ? vec3(1.0, 0.0, 0.0) : vec3(0.0, 1.0, 0.0)));
+    vec3 v = cross(w, u);
+    float r = start.w + halo;
+    vPoint = mix(a, b, position.z) + r * (position.x * u + position.y * v);
+    vStart = a;
+    vAxis = w;
+    vSize = vec2(start.w, len);
+    vLook = look;
+    gl_Position = projectionMatrix * vec4(vPoint, 1.0);
+  }
+`;
+
+const ROD_FRAGMENT = /* glsl */ `
+  ${SHARED}
+  ${TONE}
+  in vec3 vPoint;
+  flat in vec3 vStart;
+  flat in vec3 vAxis;
+  flat in vec2 vSize;
+  flat in vec4 vLook;
+  out vec4 fragment;
+  void main() {
+    vec3 ray = normalize(vPoint);
+    vec3 across = cross(ray, vAxis);
+    float s = length(across);
+    if (s < 1e-3) discard;
+    float off = abs(dot(vStart, across)) / s;
+    if (off > vSize.x + halo) discard;
+    vec3 rayFlat = ray - vAxis * dot(ray, vAxis);
+    vec3 startFlat = vStart - vAxis * dot(vStart, vAxis);
+    float nearest = dot(rayFlat, startFlat) / dot(rayFlat, rayFlat);
+    vec3 hit;
+    if (off <= vSize.x) {
+      hit = ray * (nearest - sqrt(vSize.x * vSize.x - off * off) / s);
+      bool edge = off > vSize.x - line;
+      fragment = vec4(tone(edge ? ink : vLook.rgb, vLook.a, -hit.z), 1.0);
+    } else {
+      hit = ray * nearest;
+      fragment = vec4(paper, 1.0);
+    }
+    float height = dot(hit - vStart, vAxis);
+    if (height < 0.0 || height > vSize.y) discard;
+    if (off > vSize.x) hit += ray * 0.9;
+    gl_FragDepth = depthOf(hit);
+  }
+`;
+
+export interface InkColours {
+  readonly paper: string;
+  readonly ink: string;
+}
+
+/** What both shaders read; shared so that one change of theme or distance reaches both. */
+export class InkUniforms {
+  readonly values = {
+    paper: { value: new Color() },
+    ink: { value: new Color() },
+    depthRange: { value: new Vector2(20, 40) },
+    line: { value: LINE },
+    halo: { value: HALO },
+  };
+
+  setColours({ paper, ink }: InkColours): void {
+    setPlain(this.values.paper.value, paper);
+    setPlain(this.values.ink.value, ink);
+  }
+}
+
+/** Takes a colour as it is written, without conversion: what is drawn is ink on paper, not light. */
+function setPlain(colour: Color, hex: string): void {
+  const value = Number.parseInt(hex.slice(1), 16);
+  colour.setRGB(((value >> 16) & 255) / 255, ((value >> 8) & 255) / 255, (value & 255) / 255);
+}
+
+function material(uniforms: InkUniforms, vertexShader: string, fragmentShader: string): RawShaderMaterial {
+  return new RawShaderMaterial({
+    glslVersion: GLSL3,
+    vertexShader,
+    fragmentShader,
+    uniforms: uniforms.values,
+    toneMapped: false,
+  });
+}
+
+function putLook(look: Float32Array, at: number, colour: number, strength: number): void {
+  look[at] = ((colour >> 16) & 255) / 255;
+  look[at + 1] = ((colour >> 8) & 255) / 255;
+  look[at + 2] = (colour & 255) / 255;
+  look[at + 3] = strength;
+}
+
+export function ballMesh(balls: readonly Ball[], uniforms: InkUniforms): Mesh {
+  const sphere = new Float32Array(4 * balls.length);
+  const look = new Float32Array(4 * balls.length);
+  balls.forEach((ball, i) => {
+    sphere.set([ball.x, ball.y, ball.z, ball.radius], 4 * i);
+    putLook(look, 4 * i, ball.colour, ball.strength);
+  });
+  const geometry = new InstancedBufferGeometry();
+  geometry.setAttribute(
+    'position',
+    new BufferAttribute(new Float32Array([-1, -1, 0, 1, -1, 0, 1, 1, 0, -1, 1, 0]), 3),
+  );
+  geometry.setIndex([0, 1, 2, 0, 2, 3]);
+  geometry.setAttribute('sphere', new InstancedBufferAttribute(sphere, 4));
+  geometry.setAttribute('look', new InstancedBufferAttribute(look, 4));
+  geometry.instanceCount = balls.length;
+  return plainMesh(geometry, material(uniforms, BALL_VERTEX, BALL_FRAGMENT));
+}
+
+export function rodMesh(rods: readonly Rod[], uniforms: InkUniforms): Mesh {
+  const start = new Float32Array(4 * rods.length);
+  const end = new Float32Array(3 * rods.length);
+  const look = new Float32Array(4 * rods.length);
+  rods.forEach((rod, i) => {
+    start.set([...rod.from, rod.radius], 4 * i);
+    end.set(rod.to, 3 * i);
+    putLook(look, 4 * i, rod.colour, rod.strength);
+  });
+  const corners: number[] = [];
+  for (const z of [0, 1]) corners.push(-1, -1, z, 1, -1, z, 1, 1, z, -1, 1, z);
+  const geometry = new InstancedBufferGeometry();
+  geometry.setAttribute('position', new BufferAttribute(new Float32Array(corners), 3));
+  // Outward faces, so that each ray is cast once.
+  geometry.setIndex([
+    0, 2, 1, 0, 3, 2, 4, 5, 6, 4, 6, 7, 0, 1, 5, 0, 5, 4, 1, 2, 6, 1, 6, 5, 2, 3, 7, 2, 7, 6, 3, 0, 4, 3, 4,
+    7,
+  ]);
+  geometry.setAttribute('start', new InstancedBufferAttribute(start, 4));
+  geometry.setAttribute('end', new InstancedBufferAttribute(end, 3));
+  geometry.setAttribute('look', new InstancedBufferAttribute(look, 4));
+  geometry.instanceCount = rods.length;
+  return plainMesh(geometry, material(uniforms, ROD_VERTEX, ROD_FRAGMENT));
+}
+
+function plainMesh(geometry: InstancedBufferGeometry, look: RawShaderMaterial): Mesh {
+  const mesh = new Mesh(geometry, look);
+  mesh.frustumCulled = false;
+  return mesh;
+}

@@ -1,0 +1,224 @@
+/** The judgement of one entry for the window: examined, set against its intention, as a model in full and as a line of the ledger. */
+import { elementSymbol } from '../../core/chemistry/elements.ts';
+import { atomLabel, type Molecule } from '../../core/chemistry/molecule.ts';
+import type { EntryComparison, Examined } from '../../core/comparison/compare.ts';
+import { distortionOf } from '../../core/comparison/distortion.ts';
+import { Intention } from '../../core/comparison/intention.ts';
+import { Intentions, type IntentionSource } from '../../core/comparison/intentions.ts';
+import { parseTyped } from '../../core/comparison/typed.ts';
+import type { Relation, Settings, Verdict } from '../../core/docket.ts';
+import { examine } from '../../core/examine.ts';
+import { DEFAULT_LIMITS, type Entry, type EntryError } from '../../core/formats/format.ts';
+import { smilesFormat } from '../../core/formats/smiles.ts';
+import type { Finding, Model, Row, ShownVerdict } from './protocol.ts';
+
+/** The intentions of a job, with their structures by name for the drawing. */
+export interface Intended {
+  readonly name: string;
+  readonly intentions: Intentions;
+  readonly structures: readonly Intention[];
+}
+
+/** Reads an intention given as text: descriptors on units, or a SMILES. @throws Error that says why it is neither. */
+export function intendedFromText(text: string, settings: Settings): Intended {
+  const typed = parseTyped(text, true);
+  if (typed) return { name: text, intentions: Intentions.typed(typed), structures: [] };
+  const raw = { entry: 1, line: 1, bytes: new TextEncoder().encode(`${text}\n`) };
+  const [entry] = smilesFormat.parse(raw, DEFAULT_LIMITS);
+  if (entry?.molecule && !entry.error) return intendedFromEntries(text, [entry], settings);
+  const loose = parseTyped(text, false);
+  if (loose) return { name: text, intentions: Intentions.typed(loose), structures: [] };
+  throw new Error(
+    `"${text}" is neither descriptors on units (C7=R, C9=S) nor a SMILES: ${entry?.error?.message ?? 'it is empty'}`,
+  );
+}
+
+/** Makes intentions of the readable ones of some entries. */
+export function intendedFromEntries(name: string, entries: readonly Entry[], settings: Settings): Intended {
+  const structures: Intention[] = [];
+  const sources: IntentionSource[] = [];
+  for (const entry of entries) {
+    const { molecule } = entry;
+    if (!molecule || entry.error) continue;
+    const intention = new Intention(entry.name, molecule, examine(molecule, settings));
+    structures.push(intention);
+    sources.push({ name: entry.name, load: () => intention });
+  }
+  return { name, intentions: Intentions.of(sources), structures };
+}
+
+/** Judges one entry. Never throws for what the entry holds. */
+export function judgeEntry(
+  entry: Entry,
+  place: { readonly index: number; readonly file: number },
+  intended: Intended | null,
+  settings: Settings,
+): Model {
+  const base = {
+    ...place,
+    entry: entry.entry,
+    line: entry.line,
+    name: entry.name,
+    data: entry.data,
+    warnings: entry.warnings,
+    molecule: null,
+    docket: null,
+    verdicts: [],
+    absent: [],
+    relation: null,
+    difference: null,
+    intention: null,
+    intended: null,
+    mapping: null,
+    distorted: [],
+  };
+  if (entry.error || !entry.molecule) {
+    return {
+      ...base,
+      error: entry.error ?? {
+        code: 'no-structure',
+        message: 'the entry holds no structure',
+        line: entry.line,
+      },
+    };
+  }
+  try {
+    return judgeMolecule(entry, entry.molecule, place, intended, settings);
+  } catch (error) {
+    const message = error instanceof Error ? error.message : String(error);
+    return {
+      ...base,
+      molecule: entry.molecule,
+      error: { code: 'not-examined', message: `the examination failed: ${message}`, line: entry.line },
+    };
+  }
+}
+
+function judgeMolecule(
+  entry: Entry,
+  molecule: Molecule,
+  place: { readonly index: number; readonly file: number },
+  intended: Intended | null,
+  settings: Settings,
+): Model {
+  const examineOne = (each: Molecule): Examined => ({ molecule: each, docket: examine(each, settings) });
+  let examined = examineOne(molecule);
+  let comparison: EntryComparison | null = null;
+  let relation: Relation | null = null;
+  let error: EntryError | null = null;
+  let name: string | null = null;
+  if (intended) {
+    const choice = intended.intentions.compare(examined, entry.name, examineOne);
+    if (choice.kind === 'compared') {
+      ({ comparison, name } = choice);
+      examined = comparison.examined;
+      relation = comparison.relation;
+    } else if (choice.kind === 'ambiguous') {
+      relation = 'undecided';
+      const names = choice.names.map(one => one || 'one without a name').join(', ');
+      error = {
+        code: 'ambiguous-intention',
+        message: `several intentions fit and none is named for this entry: ${names}. Give the entry the name of one`,
+        line: entry.line,
+      };
+    } else relation = 'unmatched';
+  }
+  const { docket } = examined;
+  const verdicts: ShownVerdict[] = docket.units.map(() => ({ intended: null, verdict: null, group: null }));
+  for (const unit of comparison?.units ?? []) {
+    if (unit.unit === null) continue;
+    verdicts[unit.unit] = { intended: unit.intended, verdict: unit.verdict, group: unit.group };
+  }
+  const structure = intended?.structures.find(each => each.name === name) ?? null;
+  return {
+    ...place,
+    entry: entry.entry,
+    line: entry.line,
+    name: entry.name,
+    data: entry.data,
+    error,
+    warnings: [...new Set([...entry.warnings, ...docket.warnings, ...(comparison?.warnings ?? [])])],
+    molecule: examined.molecule,
+    docket,
+    verdicts,
+    absent: (comparison?.units ?? []).filter(({ unit }) => unit === null),
+    relation,
+    difference: comparison?.difference ?? null,
+    intention: name,
+    intended: structure?.molecule ?? null,
+    mapping: comparison?.mapping ?? null,
+    distorted: docket.units.map(unit => distortionOf(examined.molecule, unit)),
+  };
+}
+
+const VERDICT_LETTERS: Readonly<Record<Verdict, string>> = {
+  agrees: 'a',
+  inverted: 'i',
+  relabelled: 'r',
+  flat: 'f',
+  open: 'o',
+  missing: 'm',
+};
+
+/** Relations in which an entry is not what was asked for, whatever its single units say. */
+const BAD_RELATIONS: readonly (Relation | null)[] = ['other compound', 'undecided', 'unmatched'];
+
+/** The line of the ledger for a judged entry. */
+export function rowOf(model: Model): Row {
+  const { molecule, docket } = model;
+  let letters = '';
+  let verdicts = '';
+  const doubtful: string[] = [];
+  let firmness: number | null = null;
+  let finding: Finding = model.error ? 'error' : 'none';
+  const raise = (to: Finding): void => {
+    if (FINDING_ORDER[to] < FINDING_ORDER[finding]) finding = to;
+  };
+  docket?.units.forEach((labelled, u) => {
+    const { unit } = labelled;
+    const verdict = model.verdicts[u]?.verdict ?? null;
+    letters += labelled.descriptor ?? '·';
+    const state = unit.state === 'flat' ? 'f' : unit.state === 'unspecified' ? 'u' : '-';
+    verdicts += verdict === null ? state : VERDICT_LETTERS[verdict];
+    if (unit.labile === null && unit.firmness !== null) firmness = Math.min(firmness ?? 1, unit.firmness);
+    const flat = verdict === 'flat' || (verdict === null && unit.state === 'flat' && unit.labile === null);
+    if (verdict === 'inverted') raise('inverted');
+    else if (verdict === 'missing') raise('missing');
+    else if (flat) raise('flat');
+    else return;
+    if (molecule) doubtful.push(unit.atoms.map(atom => atomLabel(molecule, atom, elementSymbol)).join('='));
+  });
+  for (const unit of model.absent) {
+    if (unit.verdict !== 'missing') continue;
+    raise('missing');
+    verdicts += 'm';
+    letters += '·';
+  }
+  if (BAD_RELATIONS.includes(model.relation)) raise('relation');
+  return {
+    index: model.index,
+    file: model.file,
+    entry: model.entry,
+    line: model.line,
+    name: model.name,
+    formula: docket?.molecules.map(({ formula }) => formula).join('.') ?? '',
+    atoms: molecule?.atomCount ?? 0,
+    letters,
+    verdicts,
+    doubtful: doubtful.join(', '),
+    firmness,
+    relation: model.relation,
+    finding,
+    error: model.error,
+  };
+}
+
+/** Most urgent first. */
+const FINDING_ORDER: Readonly<Record<Finding, number>> = {
+  error: 0,
+  inverted: 1,
+  missing: 2,
+  flat: 3,
+  relation: 4,
+  none: 5,
+};
