@@ -40,9 +40,9 @@ export function ringInfo(molecule: Molecule): RingInfo {
   const known = new Set<string>();
   const search = new RingSearch(molecule, bondInRing);
   for (let b = 0; b < bondCount; b++) {
-    if (bondInRing[b] === 0) continue;
+    if (bondInRing[b] === 0 || bondRingSize[b] !== 0) continue;
     const ring = search.shortest(b);
-    bondRingSize[b] = ring.length;
+    spread(molecule, bondInRing, bondRingSize, b, ring.length);
     const key = [...ring].sort((x, y) => x - y).join();
     if (known.has(key)) continue;
     known.add(key);
@@ -61,6 +61,36 @@ export function ringInfo(molecule: Molecule): RingInfo {
     ringsAt: Array.from({ length: atomCount }, (_, i) => ringsAt[i] ?? NONE),
     system: ringSystems(molecule, bondInRing),
   };
+}
+
+/** Gives a ring size to all bonds of the chain through a bond: past an atom of two ring bonds the same rings go on. */
+function spread(
+  molecule: Molecule,
+  inRing: Uint8Array,
+  bondRingSize: Uint16Array,
+  bond: number,
+  size: number,
+): void {
+  const { bondAtoms, neighbourStart, neighbourBonds } = molecule;
+  bondRingSize[bond] = size;
+  for (let side = 0; side < 2; side++) {
+    let through = bond;
+    let atom = bondAtoms[2 * bond + side]!;
+    for (;;) {
+      let onward = -1;
+      let ringBondCount = 0;
+      for (let k = neighbourStart[atom]!; k < neighbourStart[atom + 1]!; k++) {
+        const next = neighbourBonds[k]!;
+        if (inRing[next] === 0) continue;
+        ringBondCount++;
+        if (next !== through) onward = next;
+      }
+      if (ringBondCount !== 2 || bondRingSize[onward] !== 0) break;
+      bondRingSize[onward] = size;
+      through = onward;
+      atom = bondAtoms[2 * onward]! === atom ? bondAtoms[2 * onward + 1]! : bondAtoms[2 * onward]!;
+    }
+  }
 }
 
 /** Bonds that are in a ring: those that are not bridges (R. E. Tarjan, Inf. Process. Lett. 1974, 2, 160), without recursion. */

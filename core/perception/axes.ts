@@ -15,6 +15,8 @@ import type { Ligand } from './unit.ts';
 const BULK_NONE = 0;
 const BULK_FLUORINE = 0.5;
 const BULK_OXO = 0.4;
+/** An sp carbon: thin next to the axis. */
+const BULK_LINEAR = 0.6;
 const BULK_HETERO = 0.75;
 const BULK_FUSED = 0.8;
 const BULK_USUAL = 1;
@@ -26,8 +28,10 @@ const RING_LIMIT = 2.5;
 const OPEN_LIMIT = 3.3;
 /** How far below its limit an axis is still worth a mention as labile. */
 const MENTION_MARGIN = 0.6;
-/** Rings that contain the axis itself and are no larger than this hold it flat or let it flip with the ring. */
+/** Smaller rings that contain the axis itself hold it flat. */
 const SMALLEST_BRIDGE = 7;
+/** A ring of up to this size that contains the axis flips as a whole unless both flanks outside it bear a group (bridged biaryls). */
+const LARGEST_FLIPPING_BRIDGE = 8;
 
 /** Finds single bonds between two planar atoms whose flanks hinder rotation. */
 export function axisCandidates(context: PerceptionContext): PairCandidate[] {
@@ -53,18 +57,54 @@ export function axisCandidates(context: PerceptionContext): PairCandidate[] {
     const hindered =
       hindrance >= limit && Math.max(...flanksFirst.bulks) > 0 && Math.max(...flanksSecond.bulks) > 0;
     const ortho = bulks.filter(bulk => bulk > 0).length;
+    let labile = hindered
+      ? null
+      : `the single bond is judged free to turn: ${ortho} of 4 flanks bear a group, bulk ${hindrance.toFixed(1)} of ${limit}`;
+    if (hindered && ringSize > 0 && ringSize <= LARGEST_FLIPPING_BRIDGE && ortho < 4) {
+      labile = `the ring of ${ringSize} that holds the single bond is judged free to flip: ${ortho} of 4 flanks bear a group`;
+    }
+    if (hindered && !bothRings) labile ??= openSideReason(molecule, first, second);
     found.push({
       kind: 'axis',
       ends: [first, second],
       between: [],
       planar: false,
       ligands: [flanksFirst.ligands, flanksSecond.ligands],
-      labile: hindered
-        ? null
-        : `the single bond is judged free to turn: ${ortho} of 4 flanks bear a group, bulk ${hindrance.toFixed(1)} of ${limit}`,
+      labile,
     });
   }
   return found;
+}
+
+/**
+ * Why an open-chain group turns about its bond to a ring, however it is flanked: a carbonyl without a planar nitrogen
+ * beside it (acid, ester, ketone, aldehyde). Null for tertiary amides, anilides and alkenes.
+ */
+function openSideReason(molecule: Molecule, first: number, second: number): string | null {
+  for (const [atom, other] of [
+    [first, second],
+    [second, first],
+  ] as const) {
+    if (molecule.elements[atom] !== 6) continue;
+    const ligands = ligandsOf(molecule, atom, other);
+    const isCarbonyl = ligands.some(
+      ligand =>
+        (molecule.elements[ligand] === 8 || molecule.elements[ligand] === 16) &&
+        isDouble(molecule, ligand, atom),
+    );
+    if (!isCarbonyl) continue;
+    // The nitrogen of a ring or amide at the other end of the axis makes it an amide bond, which is no axis either.
+    const tertiaryAmide = ligands.some(
+      ligand =>
+        molecule.elements[ligand] === 7 &&
+        ligandsOf(molecule, ligand, atom).filter(neighbour => molecule.elements[neighbour] !== 1).length ===
+          2,
+    );
+    if (!tertiaryAmide && molecule.elements[other] === 6) {
+      return 'the bond of a carboxyl, ester or keto group to a ring is judged free to turn';
+    }
+  }
+  return null;
 }
 
 /** Three bonds and a share in a π system: a doubly bonded or aromatic atom, or a nitrogen beside one. */
@@ -173,10 +213,18 @@ function groupBulk(molecule: Molecule, atom: number, from: number): number {
     case 7:
       return heavy >= 2 ? BULK_USUAL : BULK_HETERO;
     case 6:
+      if (isLinear(molecule, atom)) return BULK_LINEAR;
       return heavy >= 3 ? BULK_QUATERNARY : BULK_USUAL;
     default:
       return BULK_USUAL;
   }
+}
+
+function isLinear(molecule: Molecule, atom: number): boolean {
+  for (let k = molecule.neighbourStart[atom]!; k < molecule.neighbourStart[atom + 1]!; k++) {
+    if (molecule.bondOrders[molecule.neighbourBonds[k]!] === 3) return true;
+  }
+  return false;
 }
 
 function isDouble(molecule: Molecule, atom: number, other: number): boolean {

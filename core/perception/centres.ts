@@ -18,6 +18,9 @@ import {
 } from './context.ts';
 import type { Ligand, StereoUnit, UnitState } from './unit.ts';
 
+/** Bridged rings larger than this let a nitrogen turn its lone pair from outside to inside (cryptands), or be planar (common practice, no source). */
+const LARGEST_HOLDING_RING = 8;
+
 /** A possible centre before it is measured. */
 export interface CentreCandidate {
   readonly atom: number;
@@ -85,6 +88,9 @@ function candidateAt(context: PerceptionContext, atom: number): CentreCandidate 
         // Three-coordinate with a lone pair: sulfoxide and its kin (valence 4) or sulfonium (a charge).
         if (valence(molecule, atom) !== 4 && charge !== 1) return null;
         lonePair = true;
+      } else if (charge === 0 && valence(molecule, atom) === 4) {
+        // Four single bonds and a lone pair: a sulfurane, no tetrahedron.
+        return null;
       }
       break;
     default:
@@ -163,7 +169,8 @@ function amineReason(context: PerceptionContext, atom: number): string | null | 
     if (rings.bondInRing[molecule.neighbourBonds[k]!] === 1) ringBonds++;
   }
   const inThreeRing = rings.atomRingSize[atom] === 3;
-  const held = (inThreeRing && heteroatom) || (ringBonds === 3 && isBridgehead(context, atom));
+  const held =
+    (inThreeRing && heteroatom) || (ringBonds === 3 && isBridgehead(context, atom, LARGEST_HOLDING_RING));
   if (held) return null;
   for (let k = first; k < last; k++) {
     const neighbour = molecule.neighbours[k]!;
@@ -174,10 +181,14 @@ function amineReason(context: PerceptionContext, atom: number): string | null | 
   return ringBonds === 3 ? 'a nitrogen of ring fusion inverts' : 'a pyramidal amine nitrogen inverts';
 }
 
-/** Whether the rings at an atom with three ring bonds share more than one bond: a bridgehead, not an atom of ring fusion. */
-export function isBridgehead(context: PerceptionContext, atom: number): boolean {
+/** Whether the rings at an atom with three ring bonds, those up to a size, share more than one bond: a bridgehead, not an atom of ring fusion. */
+export function isBridgehead(
+  context: PerceptionContext,
+  atom: number,
+  largest = Number.POSITIVE_INFINITY,
+): boolean {
   const { rings } = context;
-  const at = rings.ringsAt[atom]!;
+  const at = rings.ringsAt[atom]!.filter(index => rings.rings[index]!.length <= largest);
   for (let i = 0; i < at.length; i++) {
     for (let j = i + 1; j < at.length; j++) {
       const other = new Set(rings.rings[at[j]!]!);

@@ -12,14 +12,23 @@ export interface Prunable {
   readonly ends: readonly UnitEnd[];
 }
 
+/** Scratch of the walks through branches: marks that a new stamp clears, and a stack. */
+interface Walk {
+  readonly seen: Int32Array;
+  stamp: number;
+  readonly stack: number[];
+}
+
 /** The candidates that may be stereogenic, in their order. */
 export function prune<T extends Prunable>(context: PerceptionContext, candidates: readonly T[]): T[] {
   let kept = [...candidates];
+  const walk: Walk = { seen: new Int32Array(context.molecule.atomCount), stamp: 0, stack: [] };
+  const holders = new Int32Array(context.molecule.atomCount);
   for (;;) {
-    const holders = new Int32Array(context.molecule.atomCount);
+    holders.fill(0);
     for (const candidate of kept) for (const end of candidate.ends) holders[end.atom]!++;
     const next = kept.filter(candidate =>
-      candidate.ends.every(end => maySeparate(context, candidate, end, holders)),
+      candidate.ends.every(end => maySeparate(context, candidate, end, holders, walk)),
     );
     if (next.length === kept.length) return next;
     kept = next;
@@ -32,6 +41,7 @@ function maySeparate(
   candidate: Prunable,
   end: UnitEnd,
   holders: Int32Array,
+  walk: Walk,
 ): boolean {
   const { ligands } = end;
   let ringTies = 0;
@@ -42,11 +52,11 @@ function maySeparate(
       const first = ligands[i]!;
       if (first < 0) return false;
       if (!inOneRing(context, end.atom, first, ligands[j]!)) {
-        if (!branchHolds(context, candidate, end.atom, first, holders)) return false;
+        if (!branchHolds(context, candidate, end.atom, first, holders, walk)) return false;
         continue;
       }
       ringTies++;
-      if (!branchHolds(context, candidate, end.atom, first, holders)) open = false;
+      if (!branchHolds(context, candidate, end.atom, first, holders, walk)) open = false;
     }
   }
   // A single pair of ring ligands with no other unit in reach can be exchanged by symmetry; two pairs, or three alike,
@@ -78,20 +88,23 @@ function branchHolds(
   atom: number,
   ligand: number,
   holders: Int32Array,
+  walk: Walk,
 ): boolean {
   const { molecule } = context;
-  const own = new Set(candidate.ends.map(end => end.atom));
-  const seen = new Uint8Array(molecule.atomCount);
-  seen[atom] = 1;
-  seen[ligand] = 1;
-  const stack = [ligand];
+  const { seen, stack } = walk;
+  const stamp = ++walk.stamp;
+  seen[atom] = stamp;
+  seen[ligand] = stamp;
+  stack.length = 0;
+  stack.push(ligand);
+  const ownCount = (at: number): number => (candidate.ends.some(end => end.atom === at) ? 1 : 0);
   while (stack.length > 0) {
     const at = stack.pop()!;
-    if (holders[at]! > (own.has(at) ? 1 : 0)) return true;
+    if (holders[at]! > 0 && holders[at]! > ownCount(at)) return true;
     for (let k = molecule.neighbourStart[at]!; k < molecule.neighbourStart[at + 1]!; k++) {
       const next = molecule.neighbours[k]!;
-      if (seen[next] === 0) {
-        seen[next] = 1;
+      if (seen[next] !== stamp) {
+        seen[next] = stamp;
         stack.push(next);
       }
     }
