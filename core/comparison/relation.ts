@@ -335,7 +335,7 @@ export function searchMappings(
   let equivalent = 0;
   let choices = new Map<string, InvertedChoice>();
   /** Looks for mappings no worse than `best`; `least` is a number of inverted units that is known to be the least. */
-  const look = (least: number): void => {
+  const look = (least: number): boolean => {
     walk.run(
       false,
       () => best,
@@ -354,6 +354,7 @@ export function searchMappings(
         );
       },
     );
+    return image !== null;
   };
   let complete = true;
   if (evidence || symmetry.levels.length === 0) {
@@ -361,12 +362,11 @@ export function searchMappings(
     complete = !walk.exhausted;
   } else {
     // Deepening: with a tight bound, branches are given up at once, however large the symmetry.
-    const most = units.length;
-    for (let bound = leastInverted(units, colours, base, model); bound <= most && image === null; bound++) {
+    for (let bound = leastInverted(units, colours, base, model); bound <= units.length; bound++) {
       best = { bonding: 0, inverted: bound, undecided: unbounded };
-      look(bound);
-      // A search cut short after it found something has only left equivalents uncounted.
-      if (walk.exhausted && image === null) complete = false;
+      if (look(bound)) break;
+      // A search cut short that found nothing leaves open whether something was there.
+      if (walk.exhausted) complete = false;
     }
   }
   let mirrored = false;

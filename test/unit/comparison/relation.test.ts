@@ -170,6 +170,27 @@ describe('relation of a found molecule to the intended one', () => {
     expect(mirrored).toHaveLength(2);
   });
 
+  it('is quick about symmetry beyond counting', () => {
+    // Four arms that branch three times, 32 chiral ends: more than 10 to the 23 automorphisms.
+    const dendrimer = (inverted: ReadonlySet<number>): string => {
+      let ends = 0;
+      const end = (): string => `[C${inverted.has(ends++) ? '@@' : '@'}H](F)Cl`;
+      const branch = (depth: number): string => {
+        const arm = depth === 0 ? end : (): string => branch(depth - 1);
+        return `c${7 + depth}cc(${arm()})cc(${arm()})c${7 + depth}`;
+      };
+      return `C(${branch(2)})(${branch(2)})(${branch(2)})${branch(2)}`;
+    };
+    const intended = dendrimer(new Set());
+    expect(compared(dendrimer(new Set()), intended).relation).toBe('same');
+    expect(compared(dendrimer(new Set([3])), intended).relation).toBe('epimer');
+    const some = compared(dendrimer(new Set([0, 5, 9, 13, 20])), intended);
+    expect(some.relation).toBe('diastereomer');
+    expect(some.units.filter(({ verdict }) => verdict === 'inverted')).toHaveLength(5);
+    const all = new Set(Array.from({ length: 32 }, (_, k) => k));
+    expect(compared(dendrimer(all), intended).relation).toBe('enantiomer');
+  });
+
   it('names the first difference of another compound', () => {
     expect(compared('C[C@H](N)C(=O)S', 'C[C@H](N)C(=O)O').difference).toMatch(/1 O, the intention 2/);
     expect(compared('CC(C)CO', 'CCCCO').difference).toMatch(/no counterpart/);
