@@ -1,8 +1,8 @@
-/** The test browser itself: it starts, and it draws with WebGL 2. */
+/** The test browser itself: it starts, draws with WebGL 2, and has fonts. */
 import { expect, test } from 'vitest';
 import { launchBrowser } from './launch.ts';
 
-test('a Chromium starts and offers WebGL 2 in software', async () => {
+test('a Chromium starts, offers WebGL 2 in software, and has letters', async () => {
   const browser = await launchBrowser();
   try {
     const page = await browser.newPage();
@@ -11,6 +11,13 @@ test('a Chromium starts and offers WebGL 2 in software', async () => {
       return gl ? String(gl.getParameter(gl.VERSION)) : null;
     });
     expect(renderer).toMatch(/^WebGL 2/);
+    const width = await page.evaluate(() => {
+      const context = document.createElement('canvas').getContext('2d')!;
+      context.font = '20px sans-serif';
+      return ['R', 'σ', '−', 'Å'].map(letter => context.measureText(letter).width);
+    });
+    for (const letter of width) expect(letter).toBeGreaterThan(4);
+    expect(new Set(width).size).toBeGreaterThan(1);
   } finally {
     await browser.close();
   }

@@ -1,6 +1,15 @@
 /** Opens the built window in a real Chromium, for tests. */
 import { spawn, spawnSync } from 'node:child_process';
-import { accessSync, constants, mkdirSync, mkdtempSync, readFileSync, readdirSync, rmSync } from 'node:fs';
+import {
+  accessSync,
+  constants,
+  mkdirSync,
+  mkdtempSync,
+  readFileSync,
+  readdirSync,
+  rmSync,
+  writeFileSync,
+} from 'node:fs';
 import { tmpdir } from 'node:os';
 import { delimiter, join } from 'node:path';
 import { fileURLToPath } from 'node:url';
@@ -66,6 +75,19 @@ function systemChromium(): string | null {
   return candidates.find(executable) ?? null;
 }
 
+/** Names the carried fonts, which the carried configuration looks for elsewhere, and the system's after them. @returns Its path. */
+function fontConfiguration(folder: string): string {
+  const path = join(folder, 'deasil-fonts.conf');
+  const folders = [join(folder, 'fonts', 'fonts'), '/usr/share/fonts', '/usr/local/share/fonts'];
+  writeFileSync(
+    path,
+    `<?xml version="1.0"?><!DOCTYPE fontconfig SYSTEM "fonts.dtd"><fontconfig>${folders
+      .map(name => `<dir>${name}</dir>`)
+      .join('')}<cachedir>${join(folder, 'font-cache')}</cachedir></fontconfig>`,
+  );
+  return path;
+}
+
 interface Chromium {
   readonly path: string;
   readonly env: NodeJS.ProcessEnv;
@@ -105,7 +127,7 @@ async function carriedChromium(): Promise<Chromium> {
   try {
     const { default: unpacker } = await import('@sparticuz/chromium');
     const path = await unpacker.executablePath();
-    return { path, env: { ...process.env } };
+    return { path, env: { ...process.env, FONTCONFIG_FILE: fontConfiguration(folder) } };
   } finally {
     for (const [name, value] of earlier) {
       if (value === undefined) delete process.env[name];

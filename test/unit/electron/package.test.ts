@@ -1,5 +1,5 @@
 /** Packing: the configuration by the builder's own check, and the files of a real pack around a stand-in for the runtime. */
-import { mkdirSync, mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
+import { mkdirSync, mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { createRequire } from 'node:module';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
@@ -150,7 +150,25 @@ describe('what is packed', () => {
   });
 });
 
-test('the list of licences names every package in the bundles, each with its text', () => {
+/** The packages that the program's own sources import for more than their types. */
+function importedPackages(): Set<string> {
+  const packages = new Set<string>();
+  for (const part of ['core', 'renderer', 'electron']) {
+    for (const name of readdirSync(join(root, part), { recursive: true, encoding: 'utf8' })) {
+      if (!/\.tsx?$/.test(name)) continue;
+      const source = readFileSync(join(root, part, name), 'utf8');
+      for (const [, module] of source.matchAll(
+        /^(?:import|export) (?!type\b)[^;]*?['"]([^.'"][^'"]*)['"]/gm,
+      )) {
+        const found = /^(@[^/]+\/[^/]+|[^/:]+)(\/|$)/.exec(module!)?.[1];
+        if (found !== undefined && !module!.startsWith('node:')) packages.add(found);
+      }
+    }
+  }
+  return packages;
+}
+
+test('the list of licences names every package of the program, each with its text and a licence that allows shipping it', () => {
   ensureBuilt();
   const list = JSON.parse(readFileSync(join(root, 'dist', 'licences.json'), 'utf8')) as {
     name: string;
@@ -160,28 +178,25 @@ test('the list of licences names every package in the bundles, each with its tex
     parts: string[];
   }[];
   const names = list.map(entry => entry.name);
-  for (const name of [
-    'zod',
-    'electron',
-    'react',
-    'three',
-    '3dmol',
-    '@rdkit/rdkit',
-    'openchemlib',
-    'fflate',
-    'pdfkit',
-    '@resvg/resvg-js',
-  ]) {
-    expect(names).toContain(name);
-  }
+  const imported = importedPackages();
+  expect(imported.size).toBeGreaterThan(3);
+  for (const name of imported) expect(names).toContain(name);
+  expect(names).toContain('@resvg/resvg-js');
   for (const entry of list) {
-    expect({ name: entry.name, licence: entry.licence }).toEqual({
-      name: entry.name,
+    const { name, licence, parts } = entry;
+    expect({ name, licence, parts }).toEqual({
+      name,
       licence: expect.stringMatching(PERMISSIVE),
+      parts: expect.arrayContaining([expect.stringMatching(/^(command|electron|window)$/)]),
     });
-    expect(entry.parts.length).toBeGreaterThan(0);
+    // Some packages name their licence and ship no text of it.
+    expect({ name, text: entry.text.length > 500 || TEXTLESS.has(name) }).toEqual({ name, text: true });
   }
+  expect(JSON.parse(readFileSync(join(root, 'dist', 'window', 'licences.json'), 'utf8'))).toEqual(list);
 });
+
+/** Packages whose npm archive names a licence without its text. */
+const TEXTLESS: ReadonlySet<string> = new Set(['@rdkit/rdkit']);
 
 /** Licences under which a program may be shipped with its own MIT licence. */
 const PERMISSIVE =
