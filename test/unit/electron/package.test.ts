@@ -157,11 +157,13 @@ function importedPackages(): Set<string> {
     for (const name of readdirSync(join(root, part), { recursive: true, encoding: 'utf8' })) {
       if (!/\.tsx?$/.test(name)) continue;
       const source = readFileSync(join(root, part, name), 'utf8');
-      for (const [, module] of source.matchAll(
-        /^(?:import|export) (?!type\b)[^;]*?['"]([^.'"][^'"]*)['"]/gm,
-      )) {
+      const modules = [
+        ...source.matchAll(/^(?:import|export) (?!type\b)[^';]*from '([^.'][^']*)'/gm),
+        ...source.matchAll(/\bimport\('([^.'][^']*)'\)/g),
+      ];
+      for (const [, module] of modules) {
         const found = /^(@[^/]+\/[^/]+|[^/:]+)(\/|$)/.exec(module!)?.[1];
-        if (found !== undefined && !module!.startsWith('node:')) packages.add(found);
+        if (found !== undefined) packages.add(found);
       }
     }
   }
