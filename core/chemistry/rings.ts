@@ -88,7 +88,9 @@ function spread(
       if (ringBondCount !== 2 || bondRingSize[onward] !== 0) break;
       bondRingSize[onward] = size;
       through = onward;
-      atom = bondAtoms[2 * onward]! === atom ? bondAtoms[2 * onward + 1]! : bondAtoms[2 * onward]!;
+      const near = bondAtoms[2 * onward]!;
+      const far = bondAtoms[2 * onward + 1]!;
+      atom = near === atom ? far : near;
     }
   }
 }

@@ -17,8 +17,8 @@ function mix(hash: number, value: number): number {
 }
 
 /**
- * Class of each atom. Bond orders enter through the unsaturation of each atom, not bond by bond, so that Kekulé
- * structures do not matter; terminal O and S of one acid group (P, S, As, Se, N) count as equal whichever bears the
+ * Class of each atom. Bond orders and charges enter through the electrons of each atom, not bond by bond, so that the
+ * choice among Kekulé and other resonance structures does not matter; terminal O and S of one acid group (P, S, As, Se, N) count as equal whichever bears the
  * charge, the proton or the double bond.
  */
 export function symmetryClasses(molecule: Molecule): Int32Array {
@@ -27,8 +27,8 @@ export function symmetryClasses(molecule: Molecule): Int32Array {
   for (let i = 0; i < atomCount; i++) {
     let colour = mix(mix(7, elements[i]!), isotopes[i]!);
     if (!isAcidTerminal(molecule, i)) {
-      colour = mix(colour, unsaturation(molecule, i) * 16 + allHydrogens(molecule, i));
-      if (molecule.charges[i] !== 0) colour = mix(colour, 0x100 + molecule.charges[i]!);
+      colour = mix(colour, allHydrogens(molecule, i));
+      colour = mix(colour, electronKey(molecule, i));
     } else colour = mix(colour, 0x777);
     colours[i] = colour;
   }
@@ -69,6 +69,23 @@ function allHydrogens(molecule: Molecule, atom: number): number {
     if (molecule.elements[neighbour] === 1 && molecule.isotopes[neighbour] === 0) count++;
   }
   return count;
+}
+
+/**
+ * Charge and share in double bonds as resonance leaves them: both ends of an amidinium, a carboxylate or an allyl ion
+ * have one key, whichever is drawn with the charge. Two branches that differ in this alone exchange electrons with one another.
+ */
+function electronKey(molecule: Molecule, atom: number): number {
+  const pi = unsaturation(molecule, atom);
+  const charge = molecule.charges[atom]!;
+  const z = molecule.elements[atom]!;
+  const coordination =
+    molecule.neighbourStart[atom + 1]! - molecule.neighbourStart[atom]! + molecule.hydrogens[atom]!;
+  if (z === 7 || z === 8 || (z === 16 && coordination < 3) || (z === 34 && coordination < 3)) {
+    return 0x100 + charge - pi;
+  }
+  if (z === 6) return 0x200 + pi + Math.abs(charge);
+  return 0x300 + 16 * pi + charge;
 }
 
 function unsaturation(molecule: Molecule, atom: number): number {

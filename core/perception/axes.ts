@@ -4,7 +4,7 @@
  * Two planar groups joined by a bond that cannot turn form an axis of chirality (IUPAC 1996, Basic Terminology of Stereochemistry: axial chirality). Whether
  * it can turn is judged from the groups beside it: each of the four flanks gets a bulk, and their sum is set against a
  * limit. The classes follow S. R. LaPlante et al., J. Med. Chem. 2011, 54, 7005; the bulks and limits are ours,
- * fitted to the textbook order F < O, N < C, Cl, Br < t-Bu (common practice, no source). A judgement, not a barrier.
+ * fitted to the textbook order H < F, C≡ < O, N < C, Cl, Br < CF3 < t-Bu (common practice, no source). A judgement, not a barrier.
  */
 import type { Molecule } from '../chemistry/molecule.ts';
 import { isUnsaturated, type PerceptionContext } from './context.ts';
@@ -14,13 +14,16 @@ import type { Ligand } from './unit.ts';
 /** Bulk of hydrogen or a lone pair beside the axis. */
 const BULK_NONE = 0;
 const BULK_FLUORINE = 0.5;
-const BULK_OXO = 0.4;
+const BULK_OXO = 0.5;
 /** An sp carbon: thin next to the axis. */
 const BULK_LINEAR = 0.6;
 const BULK_HETERO = 0.75;
 const BULK_FUSED = 0.8;
 const BULK_USUAL = 1;
-const BULK_QUATERNARY = 1.5;
+const BULK_TRIFLUOROMETHYL = 1.3;
+const BULK_QUATERNARY = 1.8;
+/** The flanks of a five-membered ring bend away: their bulk counts by this much. */
+const FIVE_RING_FACTOR = 0.75;
 
 /** Sum of bulks from which a bond between two rings counts as unable to turn. */
 const RING_LIMIT = 2.5;
@@ -60,7 +63,7 @@ export function axisCandidates(context: PerceptionContext): PairCandidate[] {
     let labile = hindered
       ? null
       : `the single bond is judged free to turn: ${ortho} of 4 flanks bear a group, bulk ${hindrance.toFixed(1)} of ${limit}`;
-    if (hindered && ringSize > 0 && ringSize <= LARGEST_FLIPPING_BRIDGE && ortho < 4) {
+    if (hindered && ringSize > 0 && ringSize <= LARGEST_FLIPPING_BRIDGE && (ortho < 4 || !bothRings)) {
       labile = `the ring of ${ringSize} that holds the single bond is judged free to flip: ${ortho} of 4 flanks bear a group`;
     }
     if (hindered && !bothRings) labile ??= openSideReason(molecule, first, second);
@@ -173,7 +176,9 @@ function flanks(
   if (ligands.length !== 2) return null;
   const ring = commonRing(context, atom, ligands);
   const bulks = ligands.map(ligand =>
-    ring === null ? groupBulk(molecule, ligand, atom) : orthoBulk(context, ligand, atom, ring),
+    ring === null
+      ? groupBulk(molecule, ligand, atom)
+      : orthoBulk(context, ligand, atom, ring) * (ring.length === 5 ? FIVE_RING_FACTOR : 1),
   );
   return { ligands, bulks };
 }
@@ -214,10 +219,19 @@ function groupBulk(molecule: Molecule, atom: number, from: number): number {
       return heavy >= 2 ? BULK_USUAL : BULK_HETERO;
     case 6:
       if (isLinear(molecule, atom)) return BULK_LINEAR;
-      return heavy >= 3 ? BULK_QUATERNARY : BULK_USUAL;
+      if (heavy >= 3) return isTrifluoromethyl(molecule, atom) ? BULK_TRIFLUOROMETHYL : BULK_QUATERNARY;
+      return BULK_USUAL;
     default:
       return BULK_USUAL;
   }
+}
+
+function isTrifluoromethyl(molecule: Molecule, atom: number): boolean {
+  let fluorines = 0;
+  for (let k = molecule.neighbourStart[atom]!; k < molecule.neighbourStart[atom + 1]!; k++) {
+    if (molecule.elements[molecule.neighbours[k]!] === 9) fluorines++;
+  }
+  return fluorines === 3;
 }
 
 function isLinear(molecule: Molecule, atom: number): boolean {

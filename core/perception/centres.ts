@@ -21,6 +21,9 @@ import type { Ligand, StereoUnit, UnitState } from './unit.ts';
 /** Bridged rings larger than this let a nitrogen turn its lone pair from outside to inside (cryptands), or be planar (common practice, no source). */
 const LARGEST_HOLDING_RING = 8;
 
+/** What `amineReason` says of a nitrogen that is no candidate. */
+const PLANAR = 'planar';
+
 /** A possible centre before it is measured. */
 export interface CentreCandidate {
   readonly atom: number;
@@ -68,7 +71,7 @@ function candidateAt(context: PerceptionContext, atom: number): CentreCandidate 
         break;
       }
       const reason = amineReason(context, atom);
-      if (reason === 'planar') return null;
+      if (reason === PLANAR) return null;
       lonePair = true;
       labile = reason;
       break;
@@ -152,10 +155,10 @@ function isOxide(molecule: Molecule, atom: number): boolean {
   return valence(molecule, atom) === 5;
 }
 
-/** Why a three-coordinate nitrogen settles nothing; null where a ring holds it; `planar` where it is no pyramid, or is one of the many N–H. */
-function amineReason(context: PerceptionContext, atom: number): string | null | 'planar' {
+/** Why a three-coordinate nitrogen settles nothing; null where a ring holds it; `PLANAR` where it is no pyramid, or is one of the many N–H. */
+function amineReason(context: PerceptionContext, atom: number): string | null {
   const { molecule, rings } = context;
-  if (molecule.charges[atom] !== 0 || isUnsaturated(molecule, atom)) return 'planar';
+  if (molecule.charges[atom] !== 0 || isUnsaturated(molecule, atom)) return PLANAR;
   const first = molecule.neighbourStart[atom]!;
   const last = molecule.neighbourStart[atom + 1]!;
   let heteroatom = false;
@@ -174,9 +177,9 @@ function amineReason(context: PerceptionContext, atom: number): string | null | 
   if (held) return null;
   for (let k = first; k < last; k++) {
     const neighbour = molecule.neighbours[k]!;
-    if (molecule.elements[neighbour] !== 1 && isUnsaturated(molecule, neighbour)) return 'planar';
+    if (molecule.elements[neighbour] !== 1 && isUnsaturated(molecule, neighbour)) return PLANAR;
   }
-  if (heavy < 3) return 'planar';
+  if (heavy < 3) return PLANAR;
   if (inThreeRing) return 'the nitrogen of an N-alkyl aziridine inverts';
   return ringBonds === 3 ? 'a nitrogen of ring fusion inverts' : 'a pyramidal amine nitrogen inverts';
 }
@@ -191,7 +194,7 @@ export function isBridgehead(
   const at = rings.ringsAt[atom]!.filter(index => rings.rings[index]!.length <= largest);
   for (let i = 0; i < at.length; i++) {
     for (let j = i + 1; j < at.length; j++) {
-      const other = new Set(rings.rings[at[j]!]!);
+      const other = new Set(rings.rings[at[j]!]);
       let shared = 0;
       for (const member of rings.rings[at[i]!]!) if (other.has(member)) shared++;
       // Two rings that have two atoms in common are fused; three and more, bridged.

@@ -65,7 +65,11 @@ export function drawnCentre(molecule: Molecule, candidate: CentreCandidate): Ste
   let sense: 1 | -1 | 0 = 0;
   if (marked > 0 && !wavy && points.length >= 3) {
     const volume = points.length === 4 ? fourVolume(points) : threeVolume(points);
-    if (Math.abs(volume) < LEAST_VOLUME) {
+    if (points.length === 3 && isReentrant(points)) {
+      warnings.push(
+        'three bonds are drawn to one side of this centre with the mark on the middle one; it counts as unspecified (mark an outer bond)',
+      );
+    } else if (Math.abs(volume) < LEAST_VOLUME) {
       warnings.push('the wedges at this centre can be read either way; it counts as unspecified');
     } else {
       // Hydrogen and lone pair stand last in the list, so the volume of the drawn ligands is that of the listed order.
@@ -79,6 +83,24 @@ export function drawnCentre(molecule: Molecule, candidate: CentreCandidate): Ste
     planar: false,
     ...drawn(sense, labile, warnings),
   };
+}
+
+/**
+ * Whether three bonds lie within a half plane and the one between the others alone is marked: the mark can be meant as
+ * if the bonds were spread evenly, or as drawn, with opposite results.
+ */
+function isReentrant(points: readonly Point[]): boolean {
+  for (let i = 0; i < 3; i++) {
+    const middle = points[i]!;
+    const a = points[(i + 1) % 3]!;
+    const b = points[(i + 2) % 3]!;
+    if (middle[2] === 0 || a[2] !== 0 || b[2] !== 0) continue;
+    const cross = (p: Point, q: Point): number => p[0] * q[1] - p[1] * q[0];
+    // The middle bond lies within the angle of less than 180° between the outer ones.
+    const turn = Math.sign(cross(a, b));
+    if (turn !== 0 && cross(a, middle) * turn > 0 && cross(middle, b) * turn > 0) return true;
+  }
+  return false;
 }
 
 function fourVolume(points: readonly Point[]): number {

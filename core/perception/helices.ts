@@ -6,7 +6,7 @@
  */
 import { isLocated, type Molecule } from '../chemistry/molecule.ts';
 import { torsion } from '../geometry/torsion.ts';
-import type { PerceptionContext } from './context.ts';
+import { isUnsaturated, type PerceptionContext } from './context.ts';
 import { markHeight } from './drawing.ts';
 import type { StereoUnit, UnitState } from './unit.ts';
 
@@ -27,7 +27,9 @@ export function helixCandidates(context: PerceptionContext): HelixCandidate[] {
   const { molecule, rings } = context;
   const fusion = new Uint8Array(molecule.atomCount);
   for (let i = 0; i < molecule.atomCount; i++) {
-    if (rings.ringsAt[i]!.length === 2 && ringBondCount(context, i) === 3) fusion[i] = 1;
+    if (rings.ringsAt[i]!.length === 2 && ringBondCount(context, i) === 3 && isUnsaturated(molecule, i)) {
+      fusion[i] = 1;
+    }
   }
   const found: HelixCandidate[] = [];
   const rimNeighbours = (atom: number): number[] => {
