@@ -122,7 +122,6 @@ async function bundle(options) {
 }
 
 async function buildCommand(staging, packages) {
-  if (!present('core/commands/main.ts')) return false;
   const dir = join(staging, 'command');
   await bundle({ input: { deasil: 'core/commands/main.ts' }, dir, format: 'esm', part: 'command', packages });
   const entry = join(dir, 'deasil.js');
@@ -134,16 +133,12 @@ async function buildCommand(staging, packages) {
     // Only what the command reads: these are the bulk of its size.
     if (chunks.some(chunk => chunk.includes(basename(asset)))) await copyFile(join(root, asset), join(dir, basename(asset)));
   }
-  return true;
 }
 
 async function buildShell(staging, packages) {
-  const entries = { main: 'electron/main.ts', start: 'electron/start.ts', loopback: 'electron/loopback/serve.ts' };
-  const input = Object.fromEntries(Object.entries(entries).filter(([, source]) => present(source)));
-  if (Object.keys(input).length === 0) return false;
+  const input = { main: 'electron/main.ts', start: 'electron/start.ts' };
   const dir = join(staging, 'electron');
   await bundle({ input, dir, format: 'esm', part: 'electron', packages });
-  if (!present('electron/preload.ts')) return true;
   await bundle({
     input: { preload: 'electron/preload.ts' },
     dir,
@@ -152,11 +147,9 @@ async function buildShell(staging, packages) {
     part: 'electron',
     packages,
   });
-  return true;
 }
 
 async function buildWindow(staging, packages) {
-  if (!present('vite.config.ts')) return false;
   const { build, loadConfigFromFile } = await import('vite');
   const environment = { command: 'build', mode: 'production' };
   const loaded = await loadConfigFromFile(environment, join(root, 'vite.config.ts'), root, 'error');
@@ -172,16 +165,6 @@ async function buildWindow(staging, packages) {
     worker: { ...config.worker, plugins: () => [...(workerPlugins?.() ?? []), packageCollector(packages, 'window')] },
     build: { ...config.build, outDir: join(staging, 'window'), emptyOutDir: true },
   });
-  return true;
-}
-
-const missing = [];
-
-/** Whether a part's source is there; notes what is not. */
-function present(source) {
-  if (existsSync(join(root, source))) return true;
-  missing.push(source);
-  return false;
 }
 
 /** Licences of all that the bundles contain, with their texts. */
@@ -212,7 +195,6 @@ async function licences(packages) {
 /** Moves a built part into place. */
 async function install(staging, part) {
   const fresh = join(staging, part);
-  if (!existsSync(fresh)) return;
   const target = join(dist, part);
   const old = join(staging, `${part}.old`);
   if (existsSync(target)) await rename(target, old);
@@ -251,7 +233,7 @@ const licencesFile = part => join(dist, `.licences-${part}.json`);
 async function buildPart(part, mark, staging) {
   const packages = new Map();
   try {
-    if (!(await PARTS[part](staging, packages))) return null;
+    await PARTS[part](staging, packages);
     for (const name of BESIDE[part]) addPackage(packages, join(root, 'node_modules', ...name.split('/')), part);
     await writeFile(licencesFile(part), JSON.stringify(await licences(packages)));
     await install(staging, part);
@@ -292,7 +274,6 @@ async function buildParts(parts, onlyStale) {
   const failures = await Promise.all(stale.map(part => buildPart(part, mark, staging)));
   await rm(staging, { recursive: true, force: true });
   await joinLicences();
-  for (const source of missing) console.error(`build: ${source} is not there; its part was left out`);
   for (const failure of failures) if (failure !== null) console.error(failure);
   if (failures.some(failure => failure !== null)) process.exitCode = 1;
   console.error(`build: ${stale.join(', ')} in ${((Date.now() - started) / 1000).toFixed(1)} s`);

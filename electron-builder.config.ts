@@ -18,7 +18,6 @@ const configuration: Configuration = {
     'assets/icons/icon.png',
     // The loopback host is for checkouts without the runtime.
     '!dist/electron/start.js',
-    '!dist/electron/loopback.js',
     '!node_modules/**',
   ],
   asar: true,
