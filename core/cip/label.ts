@@ -88,11 +88,11 @@ export class Labeller {
   }
 
   /** Ranks one end's ligands as they stand now and leaves the digraph and its view in place, for the ladder. */
-  rankEnd(unitIndex: number, end: UnitEnd): { ranking: Ranking; ligands: number[] } {
+  rankEnd(unitIndex: number, end: UnitEnd, reflected = false): { ranking: Ranking; ligands: number[] } {
     const ligands = this.start(end);
     const ranking = rankByConstitution(this.view, 0, ligands);
     this.auxiliary = [];
-    if (!isComplete(ranking)) this.finish(unitIndex, ranking, ligands);
+    if (!isComplete(ranking)) this.finish(unitIndex, ranking, ligands, reflected);
     return { ranking, ligands };
   }
 
@@ -189,10 +189,11 @@ export class Labeller {
       const reference = end.ligands[ranking.order[place]!]!;
       if (reference < 0) return null;
       const rankings = unit.ends.map(e => {
-        const { ranking: own, ligands } = this.rankEnd(index, e);
-        const extended = copyOf(own);
-        if (!isComplete(extended)) rankByReference(this.view, extended, ligands, reference);
-        return extended;
+        // Inside the branches the order of the sets may rest on Rule 5; what reflection turns round then is pseudoasymmetric.
+        const mirrored = this.rankWithReference(index, e, reference, true);
+        const own = this.rankWithReference(index, e, reference, false);
+        own.pseudo = permutationParity(own.order) !== permutationParity(mirrored.order);
+        return own;
       });
       if (!rankings.every(isComplete)) return null;
       const letter = letterOf(unit, unit.sense === 0 ? 1 : unit.sense, rankings);
@@ -201,6 +202,13 @@ export class Labeller {
     }
     if (result === null) return null;
     return unit.sense === 0 ? { ...result, letter: Letter.none } : result;
+  }
+
+  private rankWithReference(index: number, end: UnitEnd, reference: number, reflected: boolean): Ranking {
+    const { ranking, ligands } = this.rankEnd(index, end, reflected);
+    const extended = copyOf(ranking);
+    if (!isComplete(extended)) rankByReference(this.view, extended, ligands, reference);
+    return extended;
   }
 
   private start(end: UnitEnd): number[] {
@@ -216,12 +224,12 @@ export class Labeller {
     return node;
   }
 
-  private finish(unitIndex: number, ranking: Ranking, ligands: readonly number[]): void {
+  private finish(unitIndex: number, ranking: Ranking, ligands: readonly number[], reflected: boolean): void {
     const tiedLigands = ranking.order.flatMap((ligand, k) =>
       ranking.tied[k] || ranking.tied[k + 1] === true ? [ligands[ligand]!] : [],
     );
     this.auxiliary = labelAuxiliary(this.view, this.scratch, tiedLigands, this.table, unitIndex);
-    if (this.auxiliary.length > 0) rankByConfiguration(this.view, ranking, ligands);
+    if (this.auxiliary.length > 0) rankByConfiguration(this.view, ranking, ligands, reflected);
   }
 }
 

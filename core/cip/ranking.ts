@@ -69,8 +69,13 @@ export function rankByConstitution(branches: Branches, root: number, ligands: re
   return ranking;
 }
 
-/** Goes on with Rules 3 to 5, once the auxiliary descriptors stand in the digraph. */
-export function rankByConfiguration(branches: Branches, ranking: Ranking, ligands: readonly number[]): void {
+/** Goes on with Rules 3 to 5, once the auxiliary descriptors stand in the digraph; with `reflected`, as in the mirror image: Rule 5 puts S first. */
+export function rankByConfiguration(
+  branches: Branches,
+  ranking: Ranking,
+  ligands: readonly number[],
+  reflected = false,
+): void {
   for (const rule of [rule3, rule4a]) {
     applyNodeRule(branches, ranking, ligands, rule);
     if (isComplete(ranking)) return;
@@ -81,9 +86,9 @@ export function rankByConfiguration(branches: Branches, ranking: Ranking, ligand
   if (isComplete(ranking)) return;
   const before = branches.save();
   const mirrored = copyOf(ranking);
-  applyNodeRule(branches, mirrored, ligands, RULE_5_MIRRORED);
+  applyNodeRule(branches, mirrored, ligands, reflected ? RULE_5 : RULE_5_MIRRORED);
   branches.restore(before);
-  applyNodeRule(branches, ranking, ligands, RULE_5);
+  applyNodeRule(branches, ranking, ligands, reflected ? RULE_5_MIRRORED : RULE_5);
   ranking.pseudo = permutationParity(ranking.order) !== permutationParity(mirrored.order);
 }
 
