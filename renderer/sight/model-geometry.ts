@@ -15,11 +15,11 @@ export interface ModelLook {
 /** Radii in Å: ours, chosen so that the numerals find room. */
 const UNIT_RADIUS = 0.36;
 const LIGAND_RADIUS = 0.32;
-const REST_RADIUS = 0.2;
+const REST_RADIUS = 0.17;
 const HYDROGEN_RADIUS = 0.17;
 const FAR_HYDROGEN_RADIUS = 0.1;
 const UNIT_ROD = 0.105;
-const REST_ROD = 0.06;
+const REST_ROD = 0.055;
 const HYDROGEN_ROD = 0.045;
 /** Distance between the rods of a double bond, Å. */
 const PAIR_GAP = 0.2;

@@ -23,8 +23,8 @@ import { modelGeometry, unitAtoms } from './model-geometry.ts';
 const FIELD = 20;
 const CAMERA_DISTANCE = 150;
 /** Half the height of the view around a unit, Å. */
-const HALF_HEIGHT = 3.9;
-const WIDE_HALF_HEIGHT = 4.3;
+const HALF_HEIGHT = 3.45;
+const WIDE_HALF_HEIGHT = 4;
 /** Length of a turn between units, ms. */
 const TURN_TIME = 420;
 /** Atoms within this many px of the pointer can be picked. */
@@ -398,15 +398,18 @@ export class SightView {
       toReader: axis(0, 0, 1),
     };
     const labels: { text: string; x: number; y: number; lit: boolean }[] = [];
-    const named = new Set<number>(this.#look.labels ? this.#own().keys() : []);
+    const named = new Set(this.#look.labels ? this.#own().keys() : []);
     if (this.#look.lit !== null) named.add(this.#look.lit);
-    for (const atom of named as Set<number>) {
+    const dial = dialOf(molecule, labelled, frame);
+    // The fourth has its own words while it hides behind the centre.
+    if (dial.hidden && dial.hidden.ligand !== this.#look.lit) named.delete(dial.hidden.ligand);
+    for (const atom of named) {
       if (!isLocated(molecule, atom)) continue;
       const [x, y] = this.#project(atom);
       labels.push({ text: atomLabel(molecule, atom, elementSymbol), x, y, lit: atom === this.#look.lit });
     }
     const drawing: DialDrawing = {
-      dial: dialOf(molecule, labelled, frame),
+      dial,
       descriptor: labelled.descriptor,
       width: this.#width,
       height: this.#height,
