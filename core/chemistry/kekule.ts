@@ -17,9 +17,6 @@ export const DoubleBondNeed = {
 } as const;
 export type DoubleBondNeed = (typeof DoubleBondNeed)[keyof typeof DoubleBondNeed];
 
-/** Order by which an aromatic bond is marked before it is resolved (bond type 4 of the CTfile formats). */
-export const AROMATIC = 4;
-
 export interface AromaticGraph {
   readonly atomCount: number;
   /** Two atoms an edge: the aromatic bonds only. */
@@ -187,16 +184,16 @@ class Matching {
   private readonly outer: Uint8Array;
   private readonly inBlossom: Uint8Array;
   private readonly seen: Uint8Array;
-  /** Atoms of the component searched: all others keep their state. */
-  private members: number[] = [];
+  /** Atoms that the last search reached: all others are as they were at first. */
+  private readonly touched: number[] = [];
 
   constructor(usable: Adjacency, needs: Uint8Array) {
     const n = usable.graph.atomCount;
     this.usable = usable;
     this.needs = needs;
     this.mate = new Int32Array(n).fill(-1);
-    this.parent = new Int32Array(n);
-    this.base = new Int32Array(n);
+    this.parent = new Int32Array(n).fill(-1);
+    this.base = Int32Array.from({ length: n }, (_, i) => i);
     this.outer = new Uint8Array(n);
     this.inBlossom = new Uint8Array(n);
     this.seen = new Uint8Array(n);
@@ -234,33 +231,31 @@ class Matching {
     }
   }
 
-  private collect(root: number): void {
-    const { seen } = this;
-    this.members = [root];
-    seen[root] = 1;
-    for (let at = 0; at < this.members.length; at++) {
-      const atom = this.members[at]!;
-      for (let k = this.usable.start[atom]!; k < this.usable.start[atom + 1]!; k++) {
-        const other = this.usable.others[k]!;
-        if (seen[other]) continue;
-        seen[other] = 1;
-        this.members.push(other);
-      }
-    }
-    for (const atom of this.members) {
-      seen[atom] = 0;
+  private touch(atom: number): void {
+    if (this.seen[atom]) return;
+    this.seen[atom] = 1;
+    this.touched.push(atom);
+  }
+
+  /** Forgets the last search: its cost is the part of the graph it reached, not the whole. */
+  private reset(): void {
+    for (const atom of this.touched) {
+      this.seen[atom] = 0;
       this.parent[atom] = -1;
       this.base[atom] = atom;
       this.outer[atom] = 0;
+      this.inBlossom[atom] = 0;
     }
+    this.touched.length = 0;
   }
 
   /** Covers `root` by a path to an uncovered atom, or by uncovering an atom of lower need. */
   private augment(root: number, need: DoubleBondNeed): void {
-    this.collect(root);
+    this.reset();
     const { mate, parent, base, outer, needs } = this;
     const { start, others, edgeOf } = this.usable;
     const queue = [root];
+    this.touch(root);
     outer[root] = 1;
     for (let at = 0; at < queue.length; at++) {
       const atom = queue[at]!;
@@ -270,10 +265,10 @@ class Matching {
         if (base[atom] === base[other] || mate[atom] === other) continue;
         if (other === root || (mate[other]! >= 0 && parent[mate[other]!]! >= 0)) {
           const common = this.commonBase(atom, other, root);
-          for (const member of this.members) this.inBlossom[member] = 0;
+          for (const member of this.touched) this.inBlossom[member] = 0;
           this.markPath(atom, common, other);
           this.markPath(other, common, atom);
-          for (const member of this.members) {
+          for (const member of this.touched) {
             if (!this.inBlossom[base[member]!]) continue;
             base[member] = common;
             if (outer[member]) continue;
@@ -281,11 +276,13 @@ class Matching {
             queue.push(member);
           }
         } else if (parent[other] === -1) {
+          this.touch(other);
           parent[other] = atom;
           if (mate[other]! < 0) {
             this.flip(other);
             return;
           }
+          this.touch(mate[other]!);
           outer[mate[other]!] = 1;
           queue.push(mate[other]!);
         }

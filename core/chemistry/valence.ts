@@ -67,22 +67,14 @@ function valencesOf(z: number, charge: number): Valences | null {
   }
 }
 
-function listed(valences: Valences): number[] {
-  return [...valences.filled, ...valences.accepted].sort((a, b) => a - b);
-}
-
 const HYDROGENS_OF = new Uint8Array((LAST_ELEMENT + 1) * CHARGES * SUMS);
-/** Smallest usual valence that is at least the sum; the sum itself where there is none. */
-const VALENCE_ABOVE = new Uint8Array((LAST_ELEMENT + 1) * CHARGES * SUMS);
 
 for (let z = 0; z <= LAST_ELEMENT; z++) {
   for (let charge = -CHARGE_REACH; charge <= CHARGE_REACH; charge++) {
     const valences = valencesOf(z, charge);
     for (let sum = 0; sum < SUMS; sum++) {
       const at = (z * CHARGES + charge + CHARGE_REACH) * SUMS + sum;
-      VALENCE_ABOVE[at] = sum;
       if (!valences) continue;
-      VALENCE_ABOVE[at] = listed(valences).find(v => v >= sum) ?? sum;
       if (valences.accepted.includes(sum)) continue;
       const target = valences.filled.find(v => v >= sum);
       HYDROGENS_OF[at] = target === undefined ? UNUSUAL : z === HYDROGEN ? 0 : target - sum;
@@ -110,11 +102,6 @@ export function isUnusualValence(z: number, charge: number, sum: number): boolea
   return (HYDROGENS_OF[tableIndex(z, charge, sum)]! & UNUSUAL) !== 0;
 }
 
-/** The smallest usual valence that is not below `sum`; `sum` itself where there is none. */
-export function valenceAbove(z: number, charge: number, sum: number): number {
-  return inTable(z, charge, sum) ? VALENCE_ABOVE[tableIndex(z, charge, sum)]! : sum;
-}
-
 /** The organic subset: the elements a SMILES may write without brackets, and the valences to which each is filled (OpenSMILES 1.0). */
 const ORGANIC_SUBSET: ReadonlyMap<number, readonly number[]> = new Map([
   [5, [3]],
@@ -139,32 +126,6 @@ export function organicSubsetHydrogens(z: number, sum: number, aromatic: boolean
   if (aromatic) return Math.max(0, valences[0]! - sum - 1);
   for (const valence of valences) if (valence >= sum) return valence - sum;
   return 0;
-}
-
-/** Most atoms a warning names one by one. */
-const NAMED_ATOMS = 5;
-
-/** A warning that names the atoms of unusual valence, or null. `sums` holds the sum of bond orders of each atom, hydrogens and unpaired electrons included. */
-export function valenceWarning(
-  elements: Uint8Array,
-  charges: Int8Array,
-  sums: Uint8Array | Uint16Array,
-): string | null {
-  let named: string[] | null = null;
-  let count = 0;
-  for (let atom = 0; atom < elements.length; atom++) {
-    if (!isUnusualValence(elements[atom]!, charges[atom]!, sums[atom]!)) continue;
-    count++;
-    named ??= [];
-    if (named.length < NAMED_ATOMS) {
-      const charge = charges[atom]!;
-      const sign = charge === 0 ? 'uncharged' : `charge ${charge > 0 ? '+' : '−'}${Math.abs(charge)}`;
-      named.push(`${elementSymbol(elements[atom]!)}${atom + 1} (${sums[atom]!} bonds, ${sign})`);
-    }
-  }
-  if (!named) return null;
-  const more = count > named.length ? ` and ${count - named.length} more` : '';
-  return `unusual valence at ${named.join(', ')}${more}; a charge or a bond order may be wrong`;
 }
 
 /** Hydrogens of a SMILES atom outside brackets whose bonds have Kekulé orders, `sum` in all. */
