@@ -2,6 +2,8 @@
 import { Worker } from 'node:worker_threads';
 import type { Intentions } from '../comparison/intentions.ts';
 import type { Format, RawEntry } from '../formats/format.ts';
+import type { EntryRecord } from '../record/json.ts';
+import type { RecordFigure } from '../record/report.ts';
 import { entryText } from '../record/text.ts';
 import { digestOf, type EntryDigest } from './check-digest.ts';
 import { checkRawEntry, type EntryOptions } from './check-entry.ts';
@@ -30,6 +32,10 @@ export interface BatchOptions extends EntryOptions {
   readonly lines: boolean;
   /** Whether digests carry their units, for a summary. */
   readonly withUnits: boolean;
+  /** Whether results carry their records, for a document. */
+  readonly withRecords: boolean;
+  /** Whether results carry figures of the units that ask for a look. */
+  readonly withFigures: boolean;
 }
 
 /** The result of one entry of the file. */
@@ -37,6 +43,8 @@ export interface EntryResult {
   readonly printed: string;
   readonly lines: string;
   readonly digests: readonly EntryDigest[];
+  readonly records: readonly EntryRecord[];
+  readonly figures: readonly RecordFigure[];
 }
 
 /** Checks the entries of a batch. */
@@ -46,7 +54,8 @@ export function checkBatch(
   options: BatchOptions,
 ): EntryResult[] {
   return batch.raws.map(raw => {
-    const records = checkRawEntry(raw, batch.format, batch.file, intentions, options);
+    const figures: RecordFigure[] | null = options.withFigures ? [] : null;
+    const records = checkRawEntry(raw, batch.format, batch.file, intentions, options, figures);
     const lines =
       options.lines || options.printing === 'json'
         ? records.map(record => `${JSON.stringify(record)}\n`).join('')
@@ -60,6 +69,8 @@ export function checkBatch(
             : '',
       lines: options.lines ? lines : '',
       digests: records.map(record => digestOf(record, options.withUnits)),
+      records: options.withRecords ? records : [],
+      figures: figures ?? [],
     };
   });
 }

@@ -8,6 +8,8 @@ import type { Docket, Settings } from '../docket.ts';
 import { examine } from '../examine.ts';
 import type { Entry, Format, Limits, RawEntry } from '../formats/format.ts';
 import { type EntryRecord, type ErrorRecord, entryRecord, unreadableRecord } from '../record/json.ts';
+import type { RecordFigure } from '../record/report.ts';
+import { figuresOf } from './check-record.ts';
 
 export interface EntryOptions {
   readonly settings: Settings;
@@ -18,15 +20,18 @@ export interface EntryOptions {
   readonly ligandsOnly: boolean;
 }
 
-/** Checks one entry as it stands in its file; more than one record where it holds more than one model. */
+/** Checks one entry as it stands in its file; more than one record where it holds more than one model. Figures of doubtful units go to `figures` where a list is given. */
 export function checkRawEntry(
   raw: RawEntry,
   format: Format,
   file: string,
   intentions: Intentions | null,
   options: EntryOptions,
+  figures: RecordFigure[] | null = null,
 ): EntryRecord[] {
-  return format.parse(raw, options.limits).map(entry => checkEntry(entry, file, intentions, options));
+  return format
+    .parse(raw, options.limits)
+    .map(entry => checkEntry(entry, file, intentions, options, figures));
 }
 
 function checkEntry(
@@ -34,6 +39,7 @@ function checkEntry(
   file: string,
   intentions: Intentions | null,
   options: EntryOptions,
+  figures: RecordFigure[] | null,
 ): EntryRecord {
   if (entry.error || !entry.molecule) {
     const error = entry.error ?? {
@@ -44,7 +50,7 @@ function checkEntry(
     return unreadableRecord(file, entry, error);
   }
   try {
-    return checkMolecule(entry, entry.molecule, file, intentions, options);
+    return checkMolecule(entry, entry.molecule, file, intentions, options, figures);
   } catch (error) {
     // One entry must not end a run of a million: what went wrong goes on its record.
     const message = error instanceof Error ? error.message : String(error);
@@ -62,6 +68,7 @@ function checkMolecule(
   file: string,
   intentions: Intentions | null,
   options: EntryOptions,
+  figures: RecordFigure[] | null,
 ): EntryRecord {
   const examineOne = (each: Molecule): Examined => ({
     molecule: each,
@@ -89,7 +96,7 @@ function checkMolecule(
     } else relation = 'unmatched';
   }
   const identity = intentions ? null : identityOf(molecule, examined.docket);
-  return entryRecord({
+  const record = entryRecord({
     file,
     entry,
     molecule: examined.molecule,
@@ -103,6 +110,8 @@ function checkMolecule(
     places: identity?.places ?? null,
     distorted: examined.docket.units.map(unit => distortionOf(examined.molecule, unit)),
   });
+  figures?.push(...figuresOf(record, examined.molecule, examined.docket.units));
+  return record;
 }
 
 function examineLigands(molecule: Molecule, options: EntryOptions): Docket {

@@ -1,8 +1,11 @@
 /** `deasil check`: every stereogenic unit of every entry, set against the intention where there is one. */
 import { stat } from 'node:fs/promises';
 import { resolve } from 'node:path';
+import manifest from '../../package.json' with { type: 'json' };
 import type { Relation } from '../docket.ts';
 import { DEFAULT_LIMITS, type RawEntry } from '../formats/format.ts';
+import type { EntryRecord } from '../record/json.ts';
+import type { RecordFigure } from '../record/report.ts';
 import {
   flag,
   number,
@@ -23,6 +26,7 @@ import {
   workerRunner,
 } from './check-batch.ts';
 import { type EntryDigest, Outcome } from './check-digest.ts';
+import { checkRecordName, inputsOf, reportOf, writeFigures, writeRecord } from './check-record.ts';
 import { Earlier } from './check-resume.ts';
 import { Summary, summaryText } from './check-summary.ts';
 import { readIntended } from './intended.ts';
@@ -46,6 +50,8 @@ const OPTIONS = {
   output: { type: 'string', short: 'o' },
   rest: { type: 'string' },
   summary: { type: 'string' },
+  record: { type: 'string' },
+  images: { type: 'string' },
   ligands: { type: 'boolean' },
   ...SETTING_OPTIONS,
 } as const satisfies Record<string, OptionSpec>;
@@ -64,6 +70,8 @@ FILE may be - for standard input. Formats are told by content, then by name; gzi
   -o, --output FILE   where --keep writes, entries byte for byte as they came; - for standard output
   --rest FILE         the complement of --keep
   --summary FILE      summary by compound, JSON where the name ends in .json; - for standard output
+  --record FILE       the record of the check as a document, .html or .csv
+  --images DIR        the sight of every doubtful unit as SVG (of every unit where nothing was intended)
   --shard I/N         only every Nth entry, from the Ith
   --jobs N            threads; by default all processors for large files, else one
   --ligands           leave the units of polymer residues out
@@ -96,6 +104,8 @@ interface CheckPlan {
   readonly output: string | null;
   readonly rest: string | null;
   readonly summary: string | null;
+  readonly record: string | null;
+  readonly images: string | null;
   readonly options: BatchOptions;
 }
 
@@ -127,6 +137,12 @@ function planOf(args: readonly string[]): CheckPlan {
   const json = flag(parsed, 'json');
   const summary = text(parsed, 'summary');
   const shard = text(parsed, 'shard');
+  const record = text(parsed, 'record');
+  const images = text(parsed, 'images');
+  if (record !== null) checkRecordName(record);
+  if (resume && (record !== null || images !== null)) {
+    throw new UsageError('--record and --images need the whole run; leave --resume out');
+  }
   if (intended === '-' && parsed.positionals.includes('-')) {
     throw new UsageError('standard input cannot be both FILE and --intended');
   }
@@ -156,6 +172,8 @@ function planOf(args: readonly string[]): CheckPlan {
     output,
     rest,
     summary,
+    record,
+    images,
     options: {
       settings: settingsOf(parsed),
       limits: DEFAULT_LIMITS,
@@ -164,6 +182,8 @@ function planOf(args: readonly string[]): CheckPlan {
       printing: json ? 'json' : quiet ? null : 'text',
       lines: lines !== null,
       withUnits: summary !== null,
+      withRecords: record !== null || images !== null,
+      withFigures: images !== null || record?.toLowerCase().endsWith('.html') === true,
     },
   };
 }
@@ -223,6 +243,8 @@ class Check {
   #lines: LineFile | null = null;
   #earlier: Earlier | null = null;
   #unusable = 0;
+  readonly #records: EntryRecord[] = [];
+  readonly #figures: RecordFigure[] = [];
 
   constructor(plan: CheckPlan, io: CommandIo, runner: Runner, size: number | null) {
     this.#plan = plan;
@@ -265,6 +287,7 @@ class Check {
     await this.#kept?.close();
     await this.#rest?.close();
     await this.#writeSummary();
+    await this.#writeRecord();
     this.#io.err(`${this.#counts()}\n`);
     if (this.#unusable > 0) return this.#outcome.checked > 0 ? ExitStatus.partly : ExitStatus.unusable;
     return this.#outcome.status();
@@ -284,6 +307,8 @@ class Check {
         for (const [r, result] of results.entries()) {
           printed += result.printed;
           lines += result.lines;
+          this.#records.push(...result.records);
+          this.#figures.push(...result.figures);
           await this.#account(result.digests, batch.raws[r]!);
         }
         if (printed !== '') await this.#io.out(printed);
@@ -363,6 +388,16 @@ class Check {
     if (this.#unusable > 0)
       parts.push(`${this.#unusable} ${this.#unusable === 1 ? 'file' : 'files'} unusable`);
     return parts.join(', ');
+  }
+
+  async #writeRecord(): Promise<void> {
+    const { record, images, files, intended, options } = this.#plan;
+    if (record !== null) {
+      const inputs = await inputsOf(this.#io.cwd, files, intended);
+      const report = reportOf(manifest.version, inputs, options.settings, this.#records, this.#figures);
+      await writeRecord(resolve(this.#io.cwd, record), report);
+    }
+    if (images !== null) await writeFigures(resolve(this.#io.cwd, images), this.#figures, this.#records);
   }
 
   async #writeSummary(): Promise<void> {
