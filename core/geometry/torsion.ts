@@ -26,30 +26,49 @@ export function torsion(r: Float64Array, a: number, b: number, c: number, d: num
   return DEGREES * Math.atan2(length * (b1x * nx + b1y * ny + b1z * nz), mx * nx + my * ny + mz * nz);
 }
 
-/** Step of the central difference by which the torsion gradient is taken, Å. */
-const STEP = 1e-4;
-
-/** Gradient of a torsion, degrees per Å, three components for each of the four atoms (central differences). */
+/**
+ * Gradient of a torsion, degrees per Å, three components for each of the four atoms a, b, c, d (A. Blondel, M. Karplus,
+ * J. Comput. Chem. 1996, 17, 1132). Zero where the torsion is not defined.
+ */
 export function torsionGradient(
   r: Float64Array,
   atoms: readonly [number, number, number, number],
 ): Float64Array {
-  const four = new Float64Array(12);
-  atoms.forEach((atom, k) => {
-    for (let x = 0; x < 3; x++) four[3 * k + x] = r[3 * atom + x]!;
-  });
+  const [a, b, c, d] = atoms;
   const gradient = new Float64Array(12);
-  for (let i = 0; i < 12; i++) {
-    const kept = four[i]!;
-    four[i] = kept + STEP;
-    const plus = torsion(four, 0, 1, 2, 3);
-    four[i] = kept - STEP;
-    const minus = torsion(four, 0, 1, 2, 3);
-    four[i] = kept;
-    let difference = plus - minus;
-    if (difference > 180) difference -= 360;
-    else if (difference < -180) difference += 360;
-    gradient[i] = difference / (2 * STEP);
+  const f = difference(r, a, b);
+  const g = difference(r, b, c);
+  const h = difference(r, d, c);
+  const m = cross(f, g);
+  const n = cross(h, g);
+  const mm = dot(m, m);
+  const nn = dot(n, n);
+  const length = Math.sqrt(dot(g, g));
+  if (mm < 1e-12 || nn < 1e-12) return gradient;
+  const fg = dot(f, g) / (mm * length);
+  const hg = dot(h, g) / (nn * length);
+  for (let x = 0; x < 3; x++) {
+    const atA = (-length / mm) * m[x]!;
+    const atD = (length / nn) * n[x]!;
+    const shared = fg * m[x]! - hg * n[x]!;
+    gradient[x] = DEGREES * atA;
+    gradient[3 + x] = DEGREES * (shared - atA);
+    gradient[6 + x] = DEGREES * (-shared - atD);
+    gradient[9 + x] = DEGREES * atD;
   }
   return gradient;
+}
+
+type Vector = readonly [number, number, number];
+
+function difference(r: Float64Array, p: number, q: number): Vector {
+  return [r[3 * p]! - r[3 * q]!, r[3 * p + 1]! - r[3 * q + 1]!, r[3 * p + 2]! - r[3 * q + 2]!];
+}
+
+function cross(p: Vector, q: Vector): Vector {
+  return [p[1] * q[2] - p[2] * q[1], p[2] * q[0] - p[0] * q[2], p[0] * q[1] - p[1] * q[0]];
+}
+
+function dot(p: Vector, q: Vector): number {
+  return p[0] * q[0] + p[1] * q[1] + p[2] * q[2];
 }

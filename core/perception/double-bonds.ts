@@ -4,7 +4,13 @@
  * C=C, C=N, N=N and their like, a lone pair being a ligand of nitrogen (P-93.4.2.1); rows of cumulated double bonds,
  * axial where their number is even, planar where it is odd (P-93.4.2).
  */
-import { IMPLICIT_HYDROGEN, isLocated, LONE_PAIR, type Molecule } from '../chemistry/molecule.ts';
+import {
+  hydrogenCount,
+  IMPLICIT_HYDROGEN,
+  isLocated,
+  LONE_PAIR,
+  type Molecule,
+} from '../chemistry/molecule.ts';
 import { torsion, torsionGradient } from '../geometry/torsion.ts';
 import { propagated } from '../geometry/signed-volume.ts';
 import { doubleBondsAt, isPlainHydrogen, type PerceptionContext } from './context.ts';
@@ -40,7 +46,11 @@ export function doubleBondCandidates(context: PerceptionContext): PairCandidate[
     if (firstIsEnd && secondIsEnd) {
       const size = rings.bondRingSize[b]!;
       if (size > 0 && size < SMALLEST_STEREOGENIC_RING) continue;
-      if (size > 0 && size <= LARGEST_DELOCALISED_RING && movable[b] === 1) continue;
+      if (size > 0 && movable[b] === 1) {
+        // A macrocycle over smaller mancude rings (a porphyrin) is delocalised as they are; a plain annulene is not judged so.
+        const smallest = Math.min(rings.atomRingSize[first]!, rings.atomRingSize[second]!);
+        if (size <= LARGEST_DELOCALISED_RING || smallest < SMALLEST_STEREOGENIC_RING) continue;
+      }
       const candidate = candidateOf(context, [first, second], []);
       if (candidate !== null) found.push(candidate);
       continue;
@@ -158,15 +168,7 @@ function labileReason(
   }
   for (const [carbon, nitrogen] of [ends, [ends[1], ends[0]]] as const) {
     if (molecule.elements[carbon] !== 6 || molecule.elements[nitrogen] !== 7) continue;
-    const bearsHydrogen =
-      molecule.hydrogens[nitrogen]! > 0 ||
-      [
-        ...molecule.neighbours.subarray(
-          molecule.neighbourStart[nitrogen]!,
-          molecule.neighbourStart[nitrogen + 1]!,
-        ),
-      ].some(neighbour => molecule.elements[neighbour] === 1);
-    if (!bearsHydrogen) continue;
+    if (hydrogenCount(molecule, nitrogen) === 0) continue;
     for (let k = molecule.neighbourStart[carbon]!; k < molecule.neighbourStart[carbon + 1]!; k++) {
       const other = molecule.neighbours[k]!;
       if (other !== nitrogen && molecule.elements[other] === 7)
