@@ -4,13 +4,7 @@
  * Not canonical: the string follows the numbering of the atoms, and is the same for the same numbering.
  */
 import { elementSymbol } from '../chemistry/elements.ts';
-import {
-  bondBetween,
-  IMPLICIT_HYDROGEN,
-  type Molecule,
-  neighboursOf,
-  type StatedStereo,
-} from '../chemistry/molecule.ts';
+import { IMPLICIT_HYDROGEN, type Molecule, neighboursOf, type StatedStereo } from '../chemistry/molecule.ts';
 import { ringInfo } from '../chemistry/rings.ts';
 import { organicSubsetHydrogens } from '../chemistry/valence.ts';
 
@@ -53,6 +47,8 @@ interface SpanningTree {
   /** Atom before each atom, -1 for a root. */
   readonly parents: Int32Array;
   readonly children: readonly (readonly number[])[];
+  /** Bond to the atom before each atom, -1 for a root. */
+  readonly bondsBefore: Int32Array;
   /** Bonds closed by digits at each atom, in the order of the digits. */
   readonly closures: readonly (readonly number[])[];
 }
@@ -60,6 +56,7 @@ interface SpanningTree {
 function spanningTree(molecule: Molecule): SpanningTree {
   const { atomCount, neighbourStart, neighbours, neighbourBonds } = molecule;
   const parents = new Int32Array(atomCount).fill(-1);
+  const bondsBefore = new Int32Array(atomCount).fill(-1);
   const children: number[][] = Array.from({ length: atomCount }, () => []);
   const closures: number[][] = Array.from({ length: atomCount }, () => []);
   const visited = new Uint8Array(atomCount);
@@ -90,11 +87,12 @@ function spanningTree(molecule: Molecule): SpanningTree {
       }
       visited[other] = 1;
       parents[other] = atom;
+      bondsBefore[other] = bond;
       children[atom]!.push(other);
       stack.push(other);
     }
   }
-  return { roots, parents, children, closures };
+  return { roots, parents, children, bondsBefore, closures };
 }
 
 function otherEnd(molecule: Molecule, bond: number, atom: number): number {
@@ -434,7 +432,7 @@ class Emission {
       const children = this.tree.children[item]!;
       for (let k = children.length - 1; k >= 0; k--) {
         const child = children[k]!;
-        const bond = this.bondSymbol(bondBetween(this.molecule, item, child), item);
+        const bond = this.bondSymbol(this.tree.bondsBefore[child]!, item);
         if (k === children.length - 1) pending.push(child, bond);
         else pending.push(')', child, `(${bond}`);
       }

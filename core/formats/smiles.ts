@@ -16,7 +16,7 @@ import {
   type StatedStereo,
 } from '../chemistry/molecule.ts';
 import { ringBonds } from '../chemistry/rings.ts';
-import { smilesHydrogens } from '../chemistry/valence.ts';
+import { defaultHydrogens, smilesHydrogens, valenceProblem } from '../chemistry/valence.ts';
 import { type CxTail, NO_TAIL, readCxTail } from './cxsmiles.ts';
 import type { Entry, EntryError, Format } from './format.ts';
 import { decodeText, splitLines } from './lines.ts';
@@ -33,6 +33,8 @@ export class SmilesError extends Error {
 }
 
 const AROMATIC_BOND = 5;
+/** `~`, a bond of any order (not in OpenSMILES, common practice): kept without a localised order. */
+const ANY_BOND = 6;
 const UNSET = -1;
 
 interface SmilesAtom {
@@ -139,13 +141,26 @@ class Reader {
         case '#':
         case '$':
         case ':':
+        case '~':
         case '/':
         case '\\':
           if (order !== 0 || direction !== 0) fail('two bonds in a row');
           bondColumn = at;
           if (c === '/') direction = 1;
           else if (c === '\\') direction = -1;
-          else order = c === '-' ? 1 : c === '=' ? 2 : c === '#' ? 3 : c === '$' ? 4 : AROMATIC_BOND;
+          else
+            order =
+              c === '-'
+                ? 1
+                : c === '='
+                  ? 2
+                  : c === '#'
+                    ? 3
+                    : c === '$'
+                      ? 4
+                      : c === '~'
+                        ? ANY_BOND
+                        : AROMATIC_BOND;
           at++;
           continue;
         default:
@@ -269,7 +284,7 @@ function settleOrders(reader: Reader): void {
   bonds.forEach((bond, b) => {
     // An unwritten bond between two aromatic rings (biphenyl) is single.
     if (bond.order === AROMATIC_BOND && rings[b] === 0) bond.order = 1;
-    const order = bond.order === AROMATIC_BOND ? 1 : bond.order;
+    const order = bond.order === AROMATIC_BOND ? 1 : bond.order === ANY_BOND ? 0 : bond.order;
     fixed[bond.first]! += order;
     fixed[bond.second]! += order;
     if (bond.order === AROMATIC_BOND) edges.push([bond.first, bond.second]);
@@ -299,7 +314,7 @@ function needsDoubleBond(atom: SmilesAtom, sum: number): boolean {
   const used = sum + Math.max(0, atom.hydrogens);
   switch (atom.element) {
     case 5:
-      return atom.charge === -1 ? used < 4 : false;
+      return atom.charge === -1 ? used < 4 : atom.charge === 0 && used < 3;
     case 6:
       // A cation has three bonds and an empty orbital, an anion three and a lone pair.
       return atom.charge === 0 ? used < 4 : used < 3;
@@ -484,12 +499,17 @@ function readSmiles(
   const { atoms, bonds } = reader;
   const sums = new Int32Array(atoms.length);
   for (const bond of bonds) {
+    if (bond.order === ANY_BOND) bond.order = 0;
     sums[bond.first]! += bond.order;
     sums[bond.second]! += bond.order;
   }
   const hydrogens = atoms.map((atom, i) =>
     atom.hydrogens === UNSET ? smilesHydrogens(atom.element, sums[i]!) : atom.hydrogens,
   );
+  atoms.forEach((atom, i) => {
+    const problem = valenceProblem(atom.element, atom.charge, 0, sums[i]! + hydrogens[i]!, i);
+    if (problem !== null) reader.warnings.push(problem);
+  });
   const cx: CxTail = tail === null ? NO_TAIL : readCxTail(tail, atoms.length);
   const stated = statedStereo(reader, hydrogens).filter(
     stereo => stereo.kind !== 'centre' || !cx.unspecified.has(stereo.atom),
@@ -499,8 +519,11 @@ function readSmiles(
     charge: atom.charge,
     isotope: atom.isotope,
     hydrogens: hydrogens[i]!,
-    radical: cx.radicals.get(i) ?? 0,
-    ...(cx.labels?.[i] ? { label: cx.labels[i]! } : {}),
+    // What a bracket atom lacks of its valence are unpaired electrons: [CH3] is methyl, [CH2] carbene.
+    radical:
+      cx.radicals.get(i) ??
+      (atom.hydrogens === UNSET ? 0 : defaultHydrogens(atom.element, atom.charge, sums[i]! + hydrogens[i]!)),
+    ...(cx.labels?.[i] ? { label: cx.labels[i] } : {}),
   }));
   const molecule = buildMolecule({
     name,

@@ -31,6 +31,8 @@ describe('SMILES', () => {
     ['*C', '*C'],
     ['N[C@@H](C)C(=O)O', 'N[C@@H](C)C(=O)O'],
     ['C[S@](=O)CC', 'C[S@](=O)CC'],
+    ['[Fe]~C', '[Fe]~C'],
+    ['[CH3]', '[CH3]'],
   ])('%s is written as %s', (smiles, written) => {
     expect(writeSmiles(moleculeOf(smiles))).toBe(written);
   });
@@ -169,6 +171,21 @@ const molecules = array(
 );
 
 describe('Molfiles', () => {
+  it('radicals of a SMILES come back (methyl, a carbene, a triplet oxygen atom)', () => {
+    for (const [smiles, unpaired] of [
+      ['[CH3]', 1],
+      ['[CH2]', 2],
+      ['[O]', 2],
+      ['C[O]', 1],
+      ['[OH-]', 0],
+      ['[Fe]', 0],
+    ] as const) {
+      const molecule = moleculeOf(smiles);
+      expect([smiles, Math.max(...molecule.radicals)]).toEqual([smiles, unpaired]);
+      expect(writeSmiles(readBack(writeMolfile(molecule)).molecule!)).toBe(smiles);
+    }
+  });
+
   it('any molecule comes back from either version', () => {
     assert(
       property(molecules, constantFrom('V2000' as const, 'V3000' as const), (molecule, version) => {
