@@ -1,6 +1,8 @@
 /** `deasil explain`: how the ligands of one unit were ranked, sphere by sphere, and the rule that decided each step. */
 import { elementSymbol } from '../chemistry/elements.ts';
 import { atomLabel, IMPLICIT_HYDROGEN, LONE_PAIR, type Molecule } from '../chemistry/molecule.ts';
+import { type LetterChange, letterChanges } from '../cip/letter-changes.ts';
+import { type StereoStatement, stereoStatements } from '../comparison/statement.ts';
 import type { Docket, Ladder, LadderNode, LadderStep, LabelledUnit } from '../docket.ts';
 import { examine, explainUnit } from '../examine.ts';
 import { DEFAULT_LIMITS, type Entry } from '../formats/format.ts';
@@ -38,18 +40,8 @@ ${SETTING_HELP}
 A computed descriptor says what the coordinates show; it is no proof of absolute configuration.
 `;
 
-/** What each rule compares (IUPAC 2013 Recommendations, P-92; Rule 6: J. Chem. Inf. Model. 2018, 58, 1755). */
-const RULES = {
-  '1a': 'higher atomic number precedes lower',
-  '1b': 'a duplicate whose original is nearer the root precedes',
-  '2': 'higher mass precedes lower',
-  '3': 'Z precedes E',
-  '4a': 'chiral precedes pseudoasymmetric precedes nonstereogenic',
-  '4b': 'like descriptor pairs precede unlike',
-  '4c': 'r precedes s, m precedes p',
-  '5': 'R precedes S, M precedes P',
-  '6': 'the reference duplicate precedes',
-} as const;
+/** Most changes of a substituent that are listed as text. */
+const CHANGES_LISTED = 8;
 
 /** Runs the command. @throws UsageError for bad arguments, an entry or a unit that is not there. */
 export async function run(args: readonly string[], io: CommandIo): Promise<number> {
@@ -78,12 +70,22 @@ export async function run(args: readonly string[], io: CommandIo): Promise<numbe
   const index = findUnit(molecule, docket, wanted);
   const labelled = docket.units[index]!;
   const ladder = explainUnit(molecule, docket, index, settings);
+  const context: Context = {
+    changes: letterChanges(molecule, docket, index, settings),
+    statements: stereoStatements(molecule, docket),
+  };
   if (flag(parsed, 'json')) {
-    await io.out(`${JSON.stringify(ladderRecord(file, entry, molecule, labelled, ladder))}\n`);
+    await io.out(`${JSON.stringify(ladderRecord(file, entry, molecule, labelled, ladder, context))}\n`);
   } else {
-    await io.out(ladderText(file, entry, molecule, labelled, ladder));
+    await io.out(ladderText(file, entry, molecule, labelled, ladder, context));
   }
   return ExitStatus.agree;
+}
+
+/** What stands beside the ladder: changes that would give another letter, and what holds of the whole molecule. */
+interface Context {
+  readonly changes: readonly LetterChange[];
+  readonly statements: readonly StereoStatement[];
 }
 
 async function findEntry(io: CommandIo, file: string, wanted: number): Promise<Entry> {
@@ -157,7 +159,6 @@ function stepLines(molecule: Molecule, step: LadderStep): string[] {
   const lines = [
     step.rule === null ? `${above} and ${below} are not told apart` : `${above} before ${below}`,
   ];
-  if (step.rule !== null) lines.push(`    Rule ${step.rule}: ${RULES[step.rule]}`);
   const width = Math.max(above.length, below.length);
   for (const { sphere, above: higher, below: lower, difference } of step.spheres) {
     const row = (sets: readonly (readonly LadderNode[])[]): string =>
@@ -176,6 +177,7 @@ function ladderText(
   molecule: Molecule,
   labelled: LabelledUnit,
   ladder: Ladder,
+  context: Context,
 ): string {
   const { unit } = labelled;
   const name = unit.atoms.map(atom => labelOf(molecule, atom)).join('-');
@@ -205,8 +207,28 @@ function ladderText(
     lines.push(`auxiliary descriptors: ${said.join(', ')}`);
   }
   lines.push(`(X): duplicate atom; ${ladder.nodes} nodes in the digraph`);
+  lines.push(...contextLines(context));
   for (const warning of [...unit.warnings, ...labelled.warnings]) lines.push(warning);
   return `${lines.join('\n')}\n`;
+}
+
+function contextLines({ changes, statements }: Context): string[] {
+  const lines: string[] = [];
+  if (changes.length > 0) {
+    lines.push('the same arrangement in space would have another letter with');
+    for (const { change, descriptor } of changes.slice(0, CHANGES_LISTED))
+      lines.push(`  ${change}: ${descriptor}`);
+    if (changes.length > CHANGES_LISTED)
+      lines.push(`  and ${changes.length - CHANGES_LISTED} other single changes`);
+  }
+  for (const { molecule, units, stereoisomers, chirality } of statements) {
+    if (units === 0) continue;
+    const which = statements.length > 1 ? `molecule ${molecule}` : 'the molecule';
+    const count =
+      stereoisomers === null ? 'stereoisomers not counted' : `${stereoisomers} stereoisomers possible`;
+    lines.push(`${which}: ${units} ${units === 1 ? 'unit' : 'units'}, ${count}, this one ${chirality}`);
+  }
+  return lines;
 }
 
 /** The ladder with 1-based atoms, for programs. */
@@ -216,6 +238,7 @@ function ladderRecord(
   molecule: Molecule,
   labelled: LabelledUnit,
   ladder: Ladder,
+  context: Context,
 ): object {
   const ligand = (at: number): object => ({
     atom: at >= 0 ? at + 1 : null,
@@ -260,5 +283,12 @@ function ladderRecord(
       descriptor,
     })),
     nodes: ladder.nodes,
+    letterChanges: context.changes.map(({ atom, distance, change, descriptor }) => ({
+      atom: atom + 1,
+      distance,
+      change,
+      descriptor,
+    })),
+    molecules: context.statements,
   };
 }
