@@ -15,7 +15,7 @@ function refuse(what) {
   process.exit(STATUS);
 }
 
-const connect = net.Socket.prototype.connect;
+const connect = Reflect.get(net.Socket.prototype, 'connect');
 net.Socket.prototype.connect = function (...args) {
   const [first] = Array.isArray(args[0]) ? args[0] : args;
   const options = typeof first === 'object' && first !== null ? first : { port: first, host: args[1] };
