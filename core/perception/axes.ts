@@ -52,6 +52,8 @@ export function axisCandidates(context: PerceptionContext): PairCandidate[] {
     const flanksFirst = flanks(context, first, second);
     const flanksSecond = flanks(context, second, first);
     if (flanksFirst === null || flanksSecond === null) continue;
+    if (exchange(molecule, first, flanksFirst.ligands) || exchange(molecule, second, flanksSecond.ligands))
+      continue;
     const bulks = [...flanksFirst.bulks, ...flanksSecond.bulks];
     const hindrance = bulks.reduce((sum, bulk) => sum + bulk, 0);
     const bothRings = isUnsaturatedRing(context, first, second) && isUnsaturatedRing(context, second, first);
@@ -108,6 +110,16 @@ function openSideReason(molecule: Molecule, first: number, second: number): stri
     }
   }
   return null;
+}
+
+/** Whether both ligands are the oxygens (or sulfurs) of a carboxyl group or carboxylate: proton and charge make them alike. */
+function exchange(molecule: Molecule, atom: number, ligands: readonly Ligand[]): boolean {
+  const [a, b] = ligands as readonly [number, number];
+  const z = molecule.elements[a];
+  if (z !== molecule.elements[b] || (z !== 8 && z !== 16)) return false;
+  return [a, b].every(ligand =>
+    ligandsOf(molecule, ligand, atom).every(neighbour => molecule.elements[neighbour] === 1),
+  );
 }
 
 /** Three bonds and a share in a π system: a doubly bonded or aromatic atom, or a nitrogen beside one. */

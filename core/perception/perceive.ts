@@ -44,13 +44,14 @@ export function perceiveUnits(molecule: Molecule, settings: Settings): Perceived
 }
 
 /**
- * A bridgehead of which nothing is stated and two bridges of which are alike: its rings, not a choice of configuration,
+ * A bridgehead, or an atom of a cage where three rings meet (cubane), of which nothing is stated and two bridges of which are alike: its rings, not a choice of configuration,
  * hold it as it is. Where coordinates or a notation give it an arrangement, it is taken as given.
  */
 function isHeldBySymmetry(context: PerceptionContext, unit: StereoUnit): boolean {
   if (unit.kind !== 'centre' || unit.sense !== 0 || unit.basis === 'coordinates') return false;
   const { ligands, atom } = unit.ends[0]!;
-  if (!isBridgehead(context, atom)) return false;
+  const isCageAtom = context.rings.ringsAt[atom]!.length >= 3;
+  if (!isCageAtom && !isBridgehead(context, atom)) return false;
   const classes = ligands.filter(ligand => ligand >= 0).map(ligand => context.classes[ligand]);
   return new Set(classes).size < classes.length;
 }
