@@ -4,7 +4,6 @@ import { commandOn, isBare, keysOf } from './commands.ts';
 import { type Controller, isDark } from './controller.ts';
 import { CommandList } from './panels/command-list.tsx';
 import { DocketPanel } from './panels/docket.tsx';
-import { DrawingPanel } from './panels/drawing.tsx';
 import { EmptyState } from './panels/empty.tsx';
 import { Header } from './panels/header.tsx';
 import { IntendDialog } from './panels/intend-dialog.tsx';
@@ -121,7 +120,6 @@ function Window(): ReactElement {
         <Header />
         <Notices />
         {empty ? <EmptyState /> : <SightPanel dark={dark} />}
-        {panels.drawing && model?.molecule && <DrawingPanel />}
         <p className="limits">{TEXT.limits}</p>
       </main>
       {aside && (

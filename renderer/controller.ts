@@ -326,9 +326,8 @@ export class Controller {
   #nextDoubtful(): void {
     const { model, unit } = this.store.get();
     const count = model?.docket?.units.length ?? 0;
-    for (let k = 1; model && k <= count; k++) {
-      const u = (unit + k) % count;
-      if (u > unit && isDoubtful(model, u)) {
+    for (let u = unit + 1; u < count; u++) {
+      if (model !== null && isDoubtful(model, u)) {
         this.selectUnit(u);
         return;
       }

@@ -228,6 +228,8 @@ export function reduce(state: State, action: Action): State {
       if (!next) return state;
       return { ...state, past: [...state.past, state.present], present: next, future: rest };
     }
+    default:
+      return state;
   }
 }
 

@@ -18,6 +18,7 @@ export const TEXT = {
   noCommand: 'No command has these words.',
   sight: 'Sight',
   sightHelp: 'Arrow keys turn the model, plus and minus change the distance.',
+  captionLabel: 'Caption',
   docket: 'Docket',
   ladder: 'Ladder',
   ledger: 'Ledger',
@@ -77,6 +78,8 @@ export const TEXT = {
     helix: 'helix',
     plane: 'plane',
   },
+  unitCount: (count: number) => (count === 1 ? '1 unit' : `${count} units`),
+  docketColumns: { unit: 'unit', firmness: 'firmness', verdict: 'verdict' },
   ledgerColumns: {
     entry: 'Entry',
     name: 'Name',
@@ -84,7 +87,7 @@ export const TEXT = {
     letters: 'Units',
     relation: 'Relation',
     finding: 'Finding',
-    firmness: 'Least firmness',
+    firmness: 'Firmness',
   },
 } as const;
 

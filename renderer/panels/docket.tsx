@@ -36,8 +36,15 @@ export function DocketPanel(): ReactElement {
     <section className="panel docket" aria-labelledby="docket-title">
       <header className="panel-head">
         <h2 id="docket-title">{TEXT.docket}</h2>
-        <span className="fine">{units.length}</span>
+        <span className="fine">{TEXT.unitCount(units.length)}</span>
       </header>
+      {units.length > 0 && (
+        <div className="unit unit-columns" aria-hidden="true">
+          <span className="unit-column-name">{TEXT.docketColumns.unit}</span>
+          <span className="unit-firmness">{TEXT.docketColumns.firmness}</span>
+          <span>{TEXT.docketColumns.verdict}</span>
+        </div>
+      )}
       {units.length === 0 && <p className="fine padded">{TEXT.noUnits}</p>}
       {units.length > 0 && (
         <ul
@@ -73,8 +80,8 @@ export function DocketPanel(): ReactElement {
                 <span className="unit-name">
                   {model?.molecule ? unitName(model.molecule, labelled) : ''}
                   <span className="fine">
-                    {labelled.unit.kind === 'centre' ? '' : ` ${TEXT.kinds[labelled.unit.kind]}`}
                     {labelled.unit.labile === null ? '' : ' labile'}
+                    <span className="said">, {TEXT.kinds[labelled.unit.kind]}</span>
                   </span>
                 </span>
                 <span className="unit-firmness" title="Firmness">

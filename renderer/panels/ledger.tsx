@@ -36,7 +36,7 @@ export function LedgerStrip(): ReactElement {
 
   useEffect(() => {
     const node = canvas.current;
-    if (!node) return;
+    if (!node) return undefined;
     const watcher = new ResizeObserver(() => setSize({ width: node.clientWidth, height: node.clientHeight }));
     watcher.observe(node);
     return () => watcher.disconnect();
@@ -242,7 +242,7 @@ function LedgerRow({
       <span role="gridcell">{row.name}</span>
       <span role="gridcell">{row.formula}</span>
       <span role="gridcell" className="letters">
-        {[...row.letters].map((letter, k) => (
+        {Array.from(row.letters, one => one).map((letter, k) => (
           <span key={k} className={`cell-${row.verdicts[k] ?? '-'}`}>
             {letter}
           </span>

@@ -5,6 +5,7 @@ import { Glyph } from '../glyph.tsx';
 import { type SightContent, SightView } from '../sight/view.ts';
 import { measure, TEXT } from '../text.ts';
 import { useAppState, useController } from '../use-store.ts';
+import { DrawingPanel } from './drawing.tsx';
 
 /** Radians for one px of dragging, and for one press of an arrow key. */
 const DRAG = 0.009;
@@ -29,7 +30,7 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
   );
 
   useEffect(() => {
-    if (!canvas.current || !overlay.current || !frame.current) return;
+    if (!canvas.current || !overlay.current || !frame.current) return undefined;
     const made = new SightView(canvas.current, overlay.current, {
       onPick: atom => controller.light(atom),
       onSide: next => controller.store.dispatch({ type: 'side', side: next }),
@@ -97,7 +98,7 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
 
   useEffect(() => {
     const box = frame.current;
-    if (!box) return;
+    if (!box) return undefined;
     const onWheel = (event: WheelEvent): void => {
       event.preventDefault();
       view.current?.zoom(Math.exp(event.deltaY * 0.0012));
@@ -150,25 +151,33 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
           </div>
         )}
       </div>
-      <p className="caption">
-        {words}
-        {model?.warnings.map(text => (
-          <span key={text} className="warning">
-            {' '}
-            {text}.
-          </span>
-        ))}
-        {model?.difference ? <span className="warning"> {model.difference}.</span> : null}
-        {labelled && model && (model.distorted[unit] ?? null) !== null ? (
-          <span className="warning"> Distorted: firmness {measure(model.distorted[unit]!, 2)} expected.</span>
-        ) : null}
-        {labelled?.warnings.map(text => (
-          <span key={text} className="warning">
-            {' '}
-            {text}.
-          </span>
-        ))}
-      </p>
+      <div className={`foot${state.panels.drawing && molecule ? ' with-drawing' : ''}`}>
+        <div className="caption" tabIndex={0} role="region" aria-label={TEXT.captionLabel}>
+          <p>
+            {words}
+            {model?.warnings.map(text => (
+              <span key={text} className="warning">
+                {' '}
+                {text}.
+              </span>
+            ))}
+            {model?.difference ? <span className="warning"> {model.difference}.</span> : null}
+            {labelled && model && (model.distorted[unit] ?? null) !== null ? (
+              <span className="warning">
+                {' '}
+                Distorted: firmness {measure(model.distorted[unit]!, 2)} expected.
+              </span>
+            ) : null}
+            {labelled?.warnings.map(text => (
+              <span key={text} className="warning">
+                {' '}
+                {text}.
+              </span>
+            ))}
+          </p>
+        </div>
+        {state.panels.drawing && molecule && <DrawingPanel />}
+      </div>
     </section>
   );
 }

@@ -88,7 +88,7 @@ export function drawDial(svg: SVGSVGElement, drawing: DialDrawing): void {
     parts.push(element('circle', { cx, cy, r: radius - 6, class: 'dial-ring', 'stroke-width': 1 }));
   if (dial.shape === 'bar') line([cx - radius, cy], [cx + radius, cy], 'dial-flat-bar', 5);
   if (dial.axis !== null) line(at(dial.axis, -radius), at(dial.axis, radius), 'dial-axis', 1);
-  const rear = (numeral: Numeral): boolean => numeral.end === 2;
+  const rear = (numeral: Numeral): boolean => numeral.end === 2 && dial.axis === null;
   for (const numeral of dial.numerals) {
     if (!numeral.onRing) continue;
     const length = numeral.end === null ? (TICKS[numeral.rank - 1] ?? 8) : numeral.rank === 1 ? 22 : 8;

@@ -25,6 +25,8 @@ const CAMERA_DISTANCE = 150;
 /** Half the height of the view around a unit, Å. */
 const HALF_HEIGHT = 3.45;
 const WIDE_HALF_HEIGHT = 4;
+/** Width over height below which the view is drawn smaller. */
+const LEAST_ASPECT = 1.12;
 /** Length of a turn between units, ms. */
 const TURN_TIME = 420;
 /** Atoms within this many px of the pointer can be picked. */
@@ -274,14 +276,14 @@ export class SightView {
     let count = 0;
     for (let i = 0; i < molecule.atomCount; i++) {
       if (!isLocated(molecule, i)) continue;
-      middle.add(new Vector3(r[3 * i]!, r[3 * i + 1]!, r[3 * i + 2]!));
+      middle.add(new Vector3(r[3 * i], r[3 * i + 1], r[3 * i + 2]));
       count++;
     }
     if (count > 0) middle.divideScalar(count);
     let reach = HALF_HEIGHT;
     for (let i = 0; i < molecule.atomCount; i++) {
       if (isLocated(molecule, i)) {
-        reach = Math.max(reach, middle.distanceTo(new Vector3(r[3 * i]!, r[3 * i + 1]!, r[3 * i + 2]!)) + 1);
+        reach = Math.max(reach, middle.distanceTo(new Vector3(r[3 * i], r[3 * i + 1], r[3 * i + 2])) + 1);
       }
     }
     return { turn: new Quaternion(), pivot: middle, halfHeight: reach };
@@ -337,8 +339,8 @@ export class SightView {
   #draw(scale: number): void {
     this.frames++;
     this.#svg.dataset['still'] = 'false';
-    const { turn, pivot, halfHeight } = this.#pose;
-    const distance = distanceFor(halfHeight * this.#zoom);
+    const { turn, pivot } = this.#pose;
+    const distance = distanceFor(this.#halfHeight());
     this.#rotation.quaternion.copy(turn);
     this.#rotation.position.z = CAMERA_DISTANCE - distance;
     this.#model.position.copy(pivot).negate();
@@ -364,17 +366,23 @@ export class SightView {
   /** Where an atom is drawn: px from the top left, and its depth towards the reader in Å. */
   #project(atom: number): [number, number, number] {
     const r = this.#content!.molecule.coordinates!;
-    const p = new Vector3(r[3 * atom]!, r[3 * atom + 1]!, r[3 * atom + 2]!)
+    const p = new Vector3(r[3 * atom], r[3 * atom + 1], r[3 * atom + 2])
       .sub(this.#pose.pivot)
       .applyQuaternion(this.#pose.turn);
-    const distance = distanceFor(this.#pose.halfHeight * this.#zoom);
+    const distance = distanceFor(this.#halfHeight());
     const k = (this.#pixelsPerUnit() * distance) / Math.max(0.1, distance - p.z);
     return [this.#width / 2 + k * p.x, this.#height / 2 - k * p.y, p.z];
   }
 
+  /** Half the height of the view, Å: more where the view is narrow, so that dial and words keep their room. */
+  #halfHeight(): number {
+    const aspect = this.#width / this.#height;
+    return this.#pose.halfHeight * this.#zoom * Math.max(1, LEAST_ASPECT / aspect);
+  }
+
   /** px for one Å at the depth of the unit. */
   #pixelsPerUnit(): number {
-    return this.#height / 2 / (this.#pose.halfHeight * this.#zoom);
+    return this.#height / 2 / this.#halfHeight();
   }
 
   #overlay(): void {

@@ -25,7 +25,7 @@ const REPORT = 80;
 const MODELS_KEPT = 24;
 
 function send(message: FromWorker): void {
-  self.postMessage(message);
+  self.postMessage(message, { transfer: [] });
 }
 
 function words(error: unknown): string {
@@ -59,6 +59,8 @@ function breathe(): Promise<void> {
 }
 
 let job = 0;
+/** Whether another job has taken the place of this one, or the person stopped it. */
+const isStale = (mine: number): boolean => job !== mine;
 let settings: Settings = DEFAULT_SETTINGS;
 let files: readonly OpenedFile[] = [];
 let table = new EntryTable(read);
@@ -270,7 +272,8 @@ async function intend(message: Extract<ToWorker, { type: 'intend' }>): Promise<v
     });
   };
   let at = 0;
-  for (; at < total && job === mine; at++) {
+  for (; at < total; at++) {
+    if (isStale(mine)) break;
     const place = { index: at, file: table.fileOf(at) };
     reporter.add(rowOf(judgeEntry(await table.entry(at), place, intended, settings)));
     const now = performance.now();

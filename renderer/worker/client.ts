@@ -36,7 +36,7 @@ export class ChemistryClient {
   }
 
   #send(message: ToWorker): void {
-    this.#worker.postMessage(message);
+    this.#worker.postMessage(message, { transfer: [] });
   }
 
   #receive(message: FromWorker): void {
