@@ -150,17 +150,23 @@ async function buildShell(staging, packages) {
 }
 
 async function buildWindow(staging, packages) {
-  const { build, loadConfigFromFile } = await import('vite');
+  const { build, createLogger, loadConfigFromFile } = await import('vite');
   const environment = { command: 'build', mode: 'production' };
   const loaded = await loadConfigFromFile(environment, join(root, 'vite.config.ts'), root, 'error');
   const config = loaded?.config ?? {};
+  const logger = createLogger('warn');
+  const { warn } = logger;
+  // rdkit.js asks for Node's modules only when it runs in Node.
+  logger.warn = (message, options) => {
+    if (!/Module "node:(fs|crypto)" has been externalized.*@rdkit/.test(message)) warn(message, options);
+  };
   const workerPlugins = config.worker?.plugins;
   const collector = packageCollector(packages, 'window');
   await build({
     ...config,
     configFile: false,
     mode: 'production',
-    logLevel: 'warn',
+    customLogger: logger,
     plugins: [...(config.plugins ?? []), collector],
     worker: { ...config.worker, plugins: () => [...(workerPlugins?.() ?? []), packageCollector(packages, 'window')] },
     build: { ...config.build, outDir: join(staging, 'window'), emptyOutDir: true },
@@ -221,6 +227,25 @@ async function locked(task) {
   }
 }
 
+/** Files of others that lie among our sources (fonts), by the licence beside them: `<name>-LICENSE.txt`. */
+async function vendoredLicences() {
+  const list = [];
+  for (const [folder, parts] of [
+    ['renderer', ['window']],
+    ['core', ['command', 'window']],
+    ['assets', ['command']],
+  ]) {
+    for (const file of await filesUnder(folder)) {
+      const name = /^(.+)-LICEN[CS]E\.txt$/.exec(basename(file))?.[1];
+      if (name === undefined) continue;
+      const text = await readFile(join(root, file), 'utf8');
+      const licence = text.includes('SIL Open Font License, Version 1.1') ? 'OFL-1.1' : 'see the text';
+      list.push({ name, version: null, licence, homepage: null, parts, text: text.trim() });
+    }
+  }
+  return list;
+}
+
 const PARTS = { command: buildCommand, electron: buildShell, window: buildWindow };
 
 /** Packages that are shipped beside a bundle rather than in it. */
@@ -256,6 +281,7 @@ async function joinLicences() {
       list.set(key, { ...entry, parts: [...(earlier?.parts ?? []), ...entry.parts] });
     }
   }
+  for (const entry of await vendoredLicences()) list.set(entry.name, entry);
   const text = JSON.stringify([...list.values()].sort((one, other) => byText(one.name, other.name)), null, 1);
   await writeFile(join(dist, 'licences.json'), text);
   if (existsSync(join(dist, 'window'))) await writeFile(join(dist, 'window', 'licences.json'), text);
@@ -301,7 +327,7 @@ async function buildSbom() {
   const { stdout } = await promisify(execFile)(npm, ['sbom', '--sbom-format', 'cyclonedx', '--package-lock-only'], options);
   const document = JSON.parse(stdout);
   const shipped = JSON.parse(await readFile(join(dist, 'licences.json'), 'utf8'));
-  const wanted = new Set(shipped.map(entry => `${entry.name}@${entry.version}`));
+  const wanted = new Set(shipped.filter(entry => entry.version !== null).map(entry => `${entry.name}@${entry.version}`));
   const components = [];
   for (const component of document.components) {
     const name = component.group ? `${component.group}/${component.name}` : component.name;
@@ -311,6 +337,15 @@ async function buildSbom() {
     components.push({ ...component, scope: 'required', properties });
   }
   if (wanted.size > 0) throw new Error(`build: the lock file does not know ${[...wanted].join(', ')}`);
+  for (const entry of await vendoredLicences()) {
+    components.push({
+      'bom-ref': entry.name,
+      type: 'file',
+      name: entry.name,
+      scope: 'required',
+      licenses: [{ license: { id: entry.licence } }],
+    });
+  }
   // npm names the component after the folder of the checkout.
   document.metadata.component.name = JSON.parse(await readFile(join(root, 'package.json'), 'utf8')).name;
   const references = new Set([document.metadata.component['bom-ref'], ...components.map(component => component['bom-ref'])]);

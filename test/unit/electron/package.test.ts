@@ -1,8 +1,8 @@
 /** Packing: the configuration by the builder's own check, and the files of a real pack around a stand-in for the runtime. */
-import { mkdirSync, mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
+import { mkdirSync, mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { createRequire } from 'node:module';
 import { tmpdir } from 'node:os';
-import { join } from 'node:path';
+import { dirname, join } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { build, type Configuration, Platform } from 'electron-builder';
 import { afterAll, beforeAll, describe, expect, test } from 'vitest';
@@ -150,18 +150,32 @@ describe('what is packed', () => {
   });
 });
 
-/** The packages that the program's own sources import for more than their types. */
+/** Where the bundles begin. */
+const ENTRIES = [
+  'core/commands/main.ts',
+  'electron/main.ts',
+  'electron/start.ts',
+  'electron/preload.ts',
+  'renderer/main.tsx',
+];
+
+/** The packages that the program's own sources import, from the entries on, for more than their types. */
 function importedPackages(): Set<string> {
   const packages = new Set<string>();
-  for (const part of ['core', 'renderer', 'electron']) {
-    for (const name of readdirSync(join(root, part), { recursive: true, encoding: 'utf8' })) {
-      if (!/\.tsx?$/.test(name)) continue;
-      const source = readFileSync(join(root, part, name), 'utf8');
-      const modules = [
-        ...source.matchAll(/^(?:import|export) (?!type\b)[^';]*from '([^.'][^']*)'/gm),
-        ...source.matchAll(/\bimport\('([^.'][^']*)'\)/g),
-      ];
-      for (const [, module] of modules) {
+  const seen = new Set<string>();
+  const waiting = ENTRIES.map(entry => join(root, entry));
+  for (let file = waiting.pop(); file !== undefined; file = waiting.pop()) {
+    if (seen.has(file) || !/\.tsx?$/.test(file)) continue;
+    seen.add(file);
+    const source = readFileSync(file, 'utf8');
+    const modules = [
+      ...source.matchAll(/^(?:import|export) (?!type\b)[^';]*from '([^']+)'/gm),
+      ...source.matchAll(/\bimport\('([^']+)'\)/g),
+      ...source.matchAll(/new URL\('(\.[^']+)', import\.meta\.url\)/g),
+    ];
+    for (const [, module] of modules) {
+      if (module!.startsWith('.')) waiting.push(join(dirname(file), module!));
+      else {
         const found = /^(@[^/]+\/[^/]+|[^/:]+)(\/|$)/.exec(module!)?.[1];
         if (found !== undefined) packages.add(found);
       }
@@ -174,7 +188,7 @@ test('the list of licences names every package of the program, each with its tex
   ensureBuilt();
   const list = JSON.parse(readFileSync(join(root, 'dist', 'licences.json'), 'utf8')) as {
     name: string;
-    version: string;
+    version: string | null;
     licence: string;
     text: string;
     parts: string[];
