@@ -134,7 +134,7 @@ export function moved(molecule: Molecule, random: () => number): Molecule {
   for (let i = 0; i < molecule.atomCount; i++) {
     for (let k = 0; k < 3; k++) {
       coordinates[3 * i + k] =
-        m[k]![0]! * r[3 * i]! + m[k]![1]! * r[3 * i + 1]! + m[k]![2]! * r[3 * i + 2]! + shift[k]!;
+        m[k]![0] * r[3 * i]! + m[k]![1] * r[3 * i + 1]! + m[k]![2] * r[3 * i + 2]! + shift[k]!;
     }
   }
   return { ...molecule, coordinates };
@@ -196,7 +196,7 @@ function moleculeFrom(random: () => number, size: number, rings: number): Molecu
   const plain = buildMolecule({ atoms: inputs, bonds });
   const stated: StatedStereo[] = [];
   for (let i = 0; i < plain.atomCount; i++) {
-    const ligands = [...plain.neighbours.subarray(plain.neighbourStart[i]!, plain.neighbourStart[i + 1]!)];
+    const ligands = [...plain.neighbours.subarray(plain.neighbourStart[i], plain.neighbourStart[i + 1])];
     if (plain.elements[i] !== 6 || plain.hydrogens[i]! + ligands.length !== 4 || ligands.length < 3) continue;
     if (plain.hydrogens[i] === 1) ligands.push(IMPLICIT_HYDROGEN);
     stated.push({

@@ -235,7 +235,7 @@ export function degree(molecule: Molecule, atom: number): number {
 
 /** Neighbours of an atom, a view without copying. */
 export function neighboursOf(molecule: Molecule, atom: number): Uint32Array {
-  return molecule.neighbours.subarray(molecule.neighbourStart[atom]!, molecule.neighbourStart[atom + 1]!);
+  return molecule.neighbours.subarray(molecule.neighbourStart[atom], molecule.neighbourStart[atom + 1]);
 }
 
 /** The bond between two atoms, or -1. */

@@ -106,7 +106,7 @@ export class Digraph {
     for (let i = molecule.hydrogens[atom]!; i > 0; i--) {
       this.add(IMPLICIT_HYDROGEN, node, depth, Nature.implicitHydrogen, -1, 1);
     }
-    this.childCount[node] = this.count - this.firstChild[node]!;
+    this.childCount[node] = this.count - this.firstChild[node];
   }
 
   /** The number of edges between two nodes of the tree. */

@@ -136,8 +136,8 @@ export class Labeller {
     this.table.sense[index] = own;
     const stereogenic = outcomes.find(o => o !== null);
     if (stereogenic === undefined) return null;
-    if (outcomes.every(o => o !== null && o.letter === stereogenic!.letter))
-      return labelled(unit, stereogenic!, []);
+    if (outcomes.every(o => o !== null && o.letter === stereogenic.letter))
+      return labelled(unit, stereogenic, []);
     return {
       ...withoutLetter(unit, [
         'no descriptor: the ranking depends on another unit whose configuration is not decided',
