@@ -154,11 +154,11 @@ async function buildWindow(staging, packages) {
   const environment = { command: 'build', mode: 'production' };
   const loaded = await loadConfigFromFile(environment, join(root, 'vite.config.ts'), root, 'error');
   const config = loaded?.config ?? {};
+  const plain = createLogger('warn');
   const logger = createLogger('warn');
-  const { warn } = logger;
   // rdkit.js asks for Node's modules only when it runs in Node.
   logger.warn = (message, options) => {
-    if (!/Module "node:(fs|crypto)" has been externalized.*@rdkit/.test(message)) warn(message, options);
+    if (!/Module "node:(fs|crypto)" has been externalized.*@rdkit/.test(message)) plain.warn(message, options);
   };
   const workerPlugins = config.worker?.plugins;
   const collector = packageCollector(packages, 'window');
@@ -167,6 +167,7 @@ async function buildWindow(staging, packages) {
     configFile: false,
     mode: 'production',
     customLogger: logger,
+    logLevel: 'warn',
     plugins: [...(config.plugins ?? []), collector],
     worker: { ...config.worker, plugins: () => [...(workerPlugins?.() ?? []), packageCollector(packages, 'window')] },
     build: { ...config.build, outDir: join(staging, 'window'), emptyOutDir: true },
