@@ -5,7 +5,7 @@
  * P-92.1.4.4 averages duplicate atoms over Kekulé structures of mancude rings only. Elsewhere the ranking is that of
  * the form drawn; where another form would give another letter, the reader has to know.
  */
-import type { Molecule } from '../chemistry/molecule.ts';
+import { degree, type Molecule } from '../chemistry/molecule.ts';
 
 /** Most groups whose other form is tried. */
 const MOST_GROUPS = 8;
@@ -51,7 +51,7 @@ function bearsCharge(z: number): boolean {
 /** An end that carries nothing: exchanging two such ends of one element changes no set. */
 function isBare(molecule: Molecule, atom: number): boolean {
   return (
-    molecule.neighbourStart[atom + 1]! - molecule.neighbourStart[atom]! === 1 &&
+    degree(molecule, atom) === 1 &&
     molecule.hydrogens[atom] === 0 &&
     molecule.isotopes[atom] === 0
   );

@@ -97,7 +97,7 @@ export async function writeFigures(
     const record = entries.find(entry => entry.file === figure.file && entry.entry === figure.entry);
     const labels = record?.units[figure.unit]?.labels.join('-') ?? String(figure.unit + 1);
     const name = `${several ? `${basename(figure.file)}-` : ''}${figure.entry}-${labels}.svg`;
-    await writeAtomically(join(folder, name.replaceAll(/[^\w.\-]/gu, '_')), figure.svg);
+    await writeAtomically(join(folder, name.replaceAll(/[^\w.-]/gu, '_')), figure.svg);
   }
 }
 
