@@ -466,8 +466,11 @@ export class Controller {
         this.mark('question');
         break;
       case 'remark':
-        dispatch({ type: 'panel', panel: 'docket', on: true });
-        setTimeout(() => this.#focusRemark?.(), 0);
+        if (this.#focusRemark) this.#focusRemark();
+        else {
+          dispatch({ type: 'panel', panel: 'docket', on: true });
+          setTimeout(() => this.#focusRemark?.(), 0);
+        }
         break;
       case 'next-unit':
         this.#step(1);

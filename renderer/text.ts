@@ -21,6 +21,7 @@ export const TEXT = {
   captionLabel: 'Caption',
   docket: 'Docket',
   ladder: 'Ladder',
+  ladderSteps: 'Comparisons',
   ledger: 'Ledger',
   drawing: 'Drawing',
   noUnits: 'No stereogenic units.',

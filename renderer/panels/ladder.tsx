@@ -16,7 +16,7 @@ export function LadderPanel(): ReactElement {
         <h2 id="ladder-title">{TEXT.ladder}</h2>
         {ladder?.ladder && <span className="fine">{ladder.ladder.nodes} nodes</span>}
       </header>
-      <div className="panel-body" tabIndex={0} role="region" aria-labelledby="ladder-title">
+      <div className="panel-body" tabIndex={0} role="group" aria-label={TEXT.ladderSteps}>
         {molecule && labelled && labelled.ranking.length > 0 && (
           <Ranks molecule={molecule} ranking={labelled.ranking} />
         )}

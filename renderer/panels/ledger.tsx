@@ -87,14 +87,11 @@ export function LedgerStrip(): ReactElement {
   };
   return (
     <nav className="strip" aria-label={TEXT.ledger}>
-      <button
-        type="button"
-        className="strip-open"
-        aria-label={`${TEXT.ledger}: ${figure(rowCount)} entries, ${figure(doubtful)} doubtful. Open the table`}
-        onClick={() => controller.run('ledger')}
-      >
+      <button type="button" className="strip-open" onClick={() => controller.run('ledger')}>
         <b>{figure(rowCount)}</b>
-        <span>{doubtful === 0 ? '' : figure(doubtful)}</span>
+        <span className="said"> entries, </span>
+        <span className="strip-doubtful">{doubtful === 0 ? '' : figure(doubtful)}</span>
+        <span className="said"> {doubtful === 0 ? 'none ' : ''}doubtful: open the ledger</span>
       </button>
       <canvas ref={canvas} aria-hidden="true" onClick={onClick} />
     </nav>

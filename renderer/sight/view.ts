@@ -111,8 +111,8 @@ export class SightView {
   #frame = 0;
   #rest: ReturnType<typeof setTimeout> | undefined;
   #animation: { from: Pose; to: Pose; start: number; lift: number } | null = null;
-  /** Frames drawn so far: for tests that hold the view to drawing on demand. */
-  frames = 0;
+  /** Frames drawn so far; also on the overlay, where one can see that nothing is drawn without need. */
+  #frames = 0;
 
   constructor(canvas: HTMLCanvasElement, svg: SVGSVGElement, events: SightEvents) {
     this.#renderer = new WebGLRenderer({
@@ -337,7 +337,7 @@ export class SightView {
   };
 
   #draw(scale: number): void {
-    this.frames++;
+    this.#svg.dataset['frames'] = String(++this.#frames);
     this.#svg.dataset['still'] = 'false';
     const { turn, pivot } = this.#pose;
     const distance = distanceFor(this.#halfHeight());
