@@ -67,16 +67,16 @@ export class HostService {
   /**
    * Enters the files named at start. What cannot be opened is told to `log`, the rest is opened.
    *
-   * @param remember Whether they belong in the recent list (the demo does not).
+   * @param demo Whether they are the demo: not for the recent list, their sessions kept apart from the program.
    */
-  async setStartFiles(paths: readonly string[], remember: boolean): Promise<readonly HostFile[]> {
-    this.#start = await this.#enter(paths, remember);
+  async setStartFiles(paths: readonly string[], demo: boolean): Promise<readonly HostFile[]> {
+    this.#start = await this.#enter(paths, demo);
     return this.#start;
   }
 
   /** Opens files named while running (a second start, a file association) and tells the window. */
-  async openPaths(paths: readonly string[], remember = true): Promise<readonly HostFile[]> {
-    const files = await this.#enter(paths, remember);
+  async openPaths(paths: readonly string[], demo = false): Promise<readonly HostFile[]> {
+    const files = await this.#enter(paths, demo);
     if (files.length > 0) this.#shell.send({ type: 'opened', files });
     return files;
   }
@@ -88,19 +88,19 @@ export class HostService {
     return file;
   }
 
-  async #enter(paths: readonly string[], remember: boolean): Promise<HostFile[]> {
+  async #enter(paths: readonly string[], demo: boolean): Promise<HostFile[]> {
     const files: HostFile[] = [];
     const entered: string[] = [];
     for (const path of paths) {
       try {
-        const file = await this.files.add(path);
+        const file = await this.files.add(path, demo);
         files.push(file);
         entered.push(this.files.entry(file.id).path);
       } catch (error) {
         this.#shell.log(error instanceof Error ? error.message : String(error));
       }
     }
-    if (remember && entered.length > 0) await this.#remember(entered);
+    if (!demo && entered.length > 0) await this.#remember(entered);
     return files;
   }
 
@@ -161,7 +161,7 @@ export class HostService {
   async #open(): Promise<HostFile[]> {
     if (!this.#shell.chooseFiles)
       throw new HostError('unsupported', 'here the page itself asks for the file');
-    return await this.#enter(await this.#shell.chooseFiles(), true);
+    return await this.#enter(await this.#shell.chooseFiles(), false);
   }
 
   async #save(request: Request<'save'>, body: Body): Promise<string | null> {

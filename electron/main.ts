@@ -108,7 +108,7 @@ async function ready(): Promise<void> {
   });
   const named = [...filesOf(process.argv, app.isPackaged, process.cwd()), ...waiting];
   const demo = named.length === 0 && process.argv.includes(DEMO_SWITCH);
-  await host.setStartFiles(demo ? await demoFiles(root) : named, !demo);
+  await host.setStartFiles(demo ? await demoFiles(root) : named, demo);
   service = host;
   listen(ipcMain, host, trustedSender, log);
   Menu.setApplicationMenu(
@@ -119,7 +119,7 @@ async function ready(): Promise<void> {
         },
         openDemo: () => {
           demoFiles(root)
-            .then(files => host.openPaths(files, false))
+            .then(files => host.openPaths(files, true))
             .catch((error: unknown) => {
               log(String(error));
             });

@@ -71,14 +71,14 @@ function openBrowser(address: string): void {
 async function serve(
   reason: string,
   files: readonly string[],
-  remember: boolean,
+  demo: boolean,
   options: StartArguments,
 ): Promise<void> {
   const host = await serveLoopback({
     windowFolder: join(dist, 'window'),
     version,
     files,
-    remember,
+    demo,
     port: options.port,
     log: message => {
       process.stderr.write(`deasil: ${message}\n`);
@@ -122,8 +122,8 @@ async function main(): Promise<void> {
     process.stdout.write(USAGE);
     return;
   }
-  const remember = options.files.length > 0;
-  const files = remember ? options.files : await demoFiles(root);
+  const demo = options.files.length === 0;
+  const files = demo ? await demoFiles(root) : options.files;
   let reason = 'Deasil runs in the browser, as asked. Open this address:';
   if (!options.browser) {
     const runtime = electronRuntime();
@@ -132,12 +132,12 @@ async function main(): Promise<void> {
         'The Electron runtime is not installed ("npx install-electron" fetches it), so Deasil runs in the browser. Open this address:';
     } else if (!hasDisplay()) reason = 'There is no display, so Deasil runs in a browser. Open this address:';
     else {
-      const failure = await runElectron(runtime, remember ? files : [DEMO_SWITCH]);
+      const failure = await runElectron(runtime, demo ? [DEMO_SWITCH] : files);
       if (failure === null) return;
       reason = `Electron did not start (${failure}), so Deasil runs in the browser. Open this address:`;
     }
   }
-  await serve(reason, files, remember, options);
+  await serve(reason, files, demo, options);
 }
 
 try {

@@ -1,7 +1,7 @@
 /** The files the person named or handed over: the only ones the window can reach, each by a random handle. */
 import { createHash, randomBytes } from 'node:crypto';
 import { type FileHandle, mkdtemp, open, realpath, rm, stat } from 'node:fs/promises';
-import { rmSync } from 'node:fs';
+import { createReadStream, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { basename, join, resolve } from 'node:path';
 import type { HostFile } from '../../renderer/host.ts';
@@ -19,7 +19,7 @@ export interface TableEntry {
   readonly name: string;
   /** Where the bytes are: the named file, or the private copy of handed-over content. */
   readonly path: string;
-  /** SHA-256 of handed-over content, which has no place of its own; null for a named file. */
+  /** SHA-256 of handed-over content and of the program's own files, beside which nothing can be kept; null for a named file. */
   readonly digest: string | null;
   version: Version;
 }
@@ -46,8 +46,13 @@ export class FileTable {
   readonly #byPath = new Map<string, TableEntry>();
   #folder: string | null = null;
 
-  /** Enters a file the person named. @throws HostError `not-readable` when it cannot be read or is not a file. */
-  async add(path: string): Promise<HostFile> {
+  /**
+   * Enters a file the person named, or one of the program's own, which is treated like handed-over content: the
+   * folder it lies in is not the person's to write to.
+   *
+   * @throws HostError `not-readable` when it cannot be read or is not a file.
+   */
+  async add(path: string, own = false): Promise<HostFile> {
     const full = resolve(path);
     try {
       const real = await realpath(full);
@@ -57,7 +62,7 @@ export class FileTable {
       if (known) return { id: known.id, name: known.name, size: info.size };
       const handle = await open(real, 'r');
       await handle.close();
-      return this.#enter(basename(full), full, null, versionOf(info));
+      return this.#enter(basename(full), full, own ? await digestOf(real) : null, versionOf(info));
     } catch (error) {
       if (error instanceof HostError) throw error;
       throw new HostError('not-readable', `${full} cannot be opened: ${systemReason(error)}`, error);
@@ -85,7 +90,7 @@ export class FileTable {
   #enter(name: string, path: string, digest: string | null, version: Version): HostFile {
     const entry: TableEntry = { id: randomBytes(16).toString('hex'), name, path, digest, version };
     this.#entries.set(entry.id, entry);
-    if (digest === null) this.#byPath.set(path, entry);
+    this.#byPath.set(path, entry);
     return publicView(entry);
   }
 
@@ -160,6 +165,12 @@ export class FileTable {
     this.#entries.clear();
     this.#byPath.clear();
   }
+}
+
+async function digestOf(path: string): Promise<string> {
+  const hash = createHash('sha256');
+  for await (const chunk of createReadStream(path) as AsyncIterable<Buffer>) hash.update(chunk);
+  return hash.digest('hex');
 }
 
 function publicView(entry: TableEntry): HostFile {

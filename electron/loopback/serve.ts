@@ -9,8 +9,8 @@ export interface ServeOptions {
   readonly version: string;
   /** Files to open at start, absolute paths. */
   readonly files: readonly string[];
-  /** Whether they belong in the recent list. */
-  readonly remember: boolean;
+  /** Whether they are the demo. */
+  readonly demo: boolean;
   readonly log: (message: string) => void;
   /** 0 for a port that the system picks. */
   readonly port?: number;
@@ -29,7 +29,7 @@ export async function serveLoopback(options: ServeOptions): Promise<LoopbackHost
     log: options.log,
     ...(options.contentLimit === undefined ? {} : { contentLimit: options.contentLimit }),
   });
-  await host.service.setStartFiles(options.files, options.remember);
+  await host.service.setStartFiles(options.files, options.demo);
   await host.listen(options.port ?? 0);
   return host;
 }

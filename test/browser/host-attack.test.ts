@@ -37,7 +37,7 @@ beforeAll(async () => {
     windowFolder: join(folder, 'window'),
     version: 'test',
     files: [join(folder, 'poses.sdf')],
-    remember: false,
+    demo: false,
     log: () => undefined,
     configFolder: join(folder, 'config'),
     stateFolder: join(folder, 'state'),

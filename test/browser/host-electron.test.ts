@@ -88,7 +88,7 @@ async function start(machine: Machine): Promise<ElectronHarness> {
     },
     log: message => logged.push(message),
   });
-  await service.setStartFiles(machine.files, true);
+  await service.setStartFiles(machine.files, false);
   listen<FakeEvent>(
     ipc,
     service,

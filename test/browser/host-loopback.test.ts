@@ -18,7 +18,7 @@ async function start(machine: Machine): Promise<Harness> {
     windowFolder,
     version: 'test',
     files: machine.files,
-    remember: true,
+    demo: false,
     log: () => undefined,
     configFolder: machine.configFolder,
     stateFolder: machine.stateFolder,

@@ -32,7 +32,7 @@ beforeAll(async () => {
     windowFolder,
     version: 'test',
     files: [join(folder, 'poses.sdf')],
-    remember: false,
+    demo: false,
     log: message => logged.push(message),
     configFolder: join(folder, 'config'),
     stateFolder: join(folder, 'state'),

@@ -198,7 +198,7 @@ export async function openWindow(files: readonly string[], options: OpenOptions 
     windowFolder: join(root, 'dist', 'window'),
     version: 'test',
     files,
-    remember: false,
+    demo: files.length > 0 && files.every(file => demoFiles().includes(file)),
     log: message => {
       complaints.push(`host: ${message}`);
     },

@@ -5,6 +5,7 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { fileURLToPath, pathToFileURL } from 'node:url';
 import { afterEach, beforeAll, beforeEach, describe, expect, test } from 'vitest';
+import { HostService } from '../../electron/host-service.ts';
 import { hostFiles } from '../../renderer/host-messages.ts';
 import { demoFiles, ensureBuilt } from './launch.ts';
 import { ask } from './loopback-client.ts';
@@ -186,6 +187,30 @@ describe.skipIf(process.platform !== 'linux')('npm start with a runtime', () => 
     expect(program.stdout()).toContain('There is no display');
     expect(program.stdout()).not.toContain('runtime ');
   });
+});
+
+test('a session of the demo is kept apart from the program', async () => {
+  const service = new HostService({
+    info: { version: 'test', shell: 'loopback', platform: process.platform },
+    configFolder: join(folder, 'config'),
+    stateFolder: join(folder, 'state'),
+    chooseFiles: null,
+    save: null,
+    send: () => undefined,
+    log: message => {
+      throw new Error(message);
+    },
+  });
+  const program = join(folder, 'program');
+  mkdirSync(program);
+  writeFileSync(join(program, 'demo.sdf'), 'demo');
+  const [file] = await service.setStartFiles([join(program, 'demo.sdf')], true);
+  await service.call('writeSession', { id: file!.id, json: '{"accepted":1}' });
+  expect(readdirSync(program)).toEqual(['demo.sdf']);
+  expect(await service.call('recent', {})).toEqual([]);
+  const [again] = await service.setStartFiles([join(program, 'demo.sdf')], true);
+  expect(await service.call('readSession', { id: again!.id })).toBe('{"accepted":1}');
+  service.dispose();
 });
 
 test('the refusal of the network would be noticed', () => {
