@@ -1,5 +1,6 @@
 /** What a file format offers: cutting a stream into entries, and reading one entry into molecules. */
 import type { Molecule } from '../chemistry/molecule.ts';
+import type { CrystalDescription } from '../crystal/description.ts';
 
 /** An entry as it stands in the file: its own bytes, untouched, so that it can be written back byte for byte. */
 export interface RawEntry {
@@ -25,6 +26,13 @@ export interface DataItem {
   readonly value: string;
 }
 
+/** A model in which one disordered part is taken in another of its alternatives. */
+export interface StructureAlternative {
+  /** "assembly A, group 2", "alternate location B". */
+  readonly name: string;
+  readonly molecule: Molecule;
+}
+
 /** One model read from a file. */
 export interface Entry {
   readonly entry: number;
@@ -35,6 +43,10 @@ export interface Entry {
   readonly data: readonly DataItem[];
   readonly warnings: readonly string[];
   readonly error: EntryError | null;
+  /** What the file says of the crystal; absent where it says nothing. */
+  readonly crystal?: CrystalDescription | null;
+  /** Models with other alternatives of the disordered parts; `molecule` has the ones chosen by rule. */
+  readonly alternatives?: readonly StructureAlternative[];
 }
 
 export interface Limits {

@@ -188,6 +188,7 @@ class OrderFinder {
 
   private findHydrogens(): void {
     const seen = new Uint8Array(this.n);
+    let anywhere = false;
     for (let root = 0; root < this.n; root++) {
       if (seen[root] || this.fixed[root]) continue;
       const members = [root];
@@ -209,7 +210,10 @@ class OrderFinder {
         this.carbonHydrogens[i] = carbon > 0 ? 1 : 0;
         this.polarHydrogens[i] = carbon > 0 || polar > 0 ? 1 : 0;
       }
+      if (carbon > 0) anywhere = true;
     }
+    // Where hydrogens on carbon are listed at all, ions without any have none.
+    if (anywhere) for (let i = 0; i < this.n; i++) if (!this.fixed[i]) this.polarHydrogens[i] = 1;
   }
 
   private isFlat(i: number): boolean {
@@ -552,6 +556,7 @@ class OrderFinder {
       const count = this.partners(i).length;
       if (z === 7 && this.charges[i] === 0 && sum === 4) this.charges[i] = 1;
       if (z === 5 && sum === 4) this.charges[i] = -1;
+      if ((z === 15 || z === 33 || z === 51) && count === 6 && sum === 6) this.charges[i] = -1;
       if (z === 8 && sum === 3 && !metal) this.charges[i] = 1;
       if (z === 16 && count === 3 && sum === 3) this.charges[i] = 1;
       if (this.charges[i] !== 0) {
@@ -571,13 +576,15 @@ class OrderFinder {
         if (this.flat[i] && this.pi[i] === 0) this.doubtful[i] = 1;
         continue;
       }
-      if (this.anionic[i] && (this.polarHydrogens[i] || metal)) {
+      // How a ligand and its metal share their charge is not told by geometry.
+      if (metal) continue;
+      if (this.anionic[i] && this.polarHydrogens[i]) {
         this.charges[i] = -1;
         continue;
       }
       const halogen = z === 9 || z === 17 || z === 35 || z === 53;
-      if ((metal || (halogen && count === 0)) && z !== 15) {
-        if (missing <= 2) this.charges[i] = -missing;
+      if (halogen && count === 0) {
+        this.charges[i] = -1;
         continue;
       }
       this.hydrogens[i] = missing;
