@@ -27,22 +27,25 @@ export function prune<T extends Prunable>(context: PerceptionContext, candidates
   for (;;) {
     holders.fill(0);
     for (const candidate of kept) for (const end of candidate.ends) holders[end.atom]!++;
-    const next = kept.filter(candidate =>
-      candidate.ends.every(end => maySeparate(context, candidate, end, holders, walk)),
-    );
+    const next = kept.filter(candidate => {
+      const outlook = candidate.ends.map(end => separation(context, candidate, end, holders, walk));
+      if (outlook.includes('never')) return false;
+      // Ring ligands exchanged by symmetry at one end alone leave nothing; at both ends, Rule 6 may still decide.
+      return outlook.filter(end => end === 'exchanged').length !== 1;
+    });
     if (next.length === kept.length) return next;
     kept = next;
   }
 }
 
-/** Whether the ligands of one end may all be told apart. */
-function maySeparate(
+/** What can become of the ligands of one end: told apart perhaps; two in a ring exchanged by symmetry; or never told apart. */
+function separation(
   context: PerceptionContext,
   candidate: Prunable,
   end: UnitEnd,
   holders: Int32Array,
   walk: Walk,
-): boolean {
+): 'perhaps' | 'exchanged' | 'never' {
   const { ligands } = end;
   let ringTies = 0;
   let open = true;
@@ -50,9 +53,9 @@ function maySeparate(
     for (let j = i + 1; j < ligands.length; j++) {
       if (!alike(context, ligands[i]!, ligands[j]!)) continue;
       const first = ligands[i]!;
-      if (first < 0) return false;
+      if (first < 0) return 'never';
       if (!inOneRing(context, end.atom, first, ligands[j]!)) {
-        if (!branchHolds(context, candidate, end.atom, first, holders, walk)) return false;
+        if (!branchHolds(context, candidate, end.atom, first, holders, walk)) return 'never';
         continue;
       }
       ringTies++;
@@ -61,7 +64,7 @@ function maySeparate(
   }
   // A single pair of ring ligands with no other unit in reach can be exchanged by symmetry; two pairs, or three alike,
   // may still be stereogenic (Rule 6).
-  return open || ringTies !== 1 || candidate.ends.length === 2;
+  return open || ringTies !== 1 ? 'perhaps' : 'exchanged';
 }
 
 function alike(context: PerceptionContext, a: Ligand, b: Ligand): boolean {
