@@ -18,6 +18,8 @@ export interface EntryOptions {
   readonly matchBy: string | null;
   /** Units of polymer residues are left out. */
   readonly ligandsOnly: boolean;
+  /** The user states that the sample of a crystal structure is enantiopure. */
+  readonly enantiopure?: boolean;
 }
 
 /** Checks one entry as it stands in its file; more than one record where it holds more than one model. Figures of doubtful units go to `figures` where a list is given. */
@@ -108,6 +110,7 @@ function checkMolecule(
     compound: identity?.compound ?? null,
     configuration: identity?.configuration ?? null,
     places: identity?.places ?? null,
+    enantiopure: options.enantiopure ?? false,
     distorted: examined.docket.units.map(unit => distortionOf(examined.molecule, unit)),
   });
   figures?.push(...figuresOf(record, examined.molecule, examined.docket.units));

@@ -53,6 +53,7 @@ const OPTIONS = {
   record: { type: 'string' },
   images: { type: 'string' },
   ligands: { type: 'boolean' },
+  enantiopure: { type: 'boolean' },
   ...SETTING_OPTIONS,
 } as const satisfies Record<string, OptionSpec>;
 
@@ -75,6 +76,7 @@ FILE may be - for standard input. Formats are told by content, then by name; gzi
   --shard I/N         only every Nth entry, from the Ith
   --jobs N            threads; by default all processors for large files, else one
   --ligands           leave the units of polymer residues out
+  --enantiopure       the samples of crystal structures are known to be enantiopure
 ${SETTING_HELP}
 
 Exit status: 0 all agree or nothing was intended; 1 some unit inverted, flat or missing, or another compound,
@@ -179,6 +181,7 @@ function planOf(args: readonly string[]): CheckPlan {
       limits: DEFAULT_LIMITS,
       matchBy: text(parsed, 'match-by'),
       ligandsOnly: flag(parsed, 'ligands'),
+      enantiopure: flag(parsed, 'enantiopure'),
       printing: json ? 'json' : quiet ? null : 'text',
       lines: lines !== null,
       withUnits: summary !== null,

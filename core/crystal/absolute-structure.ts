@@ -44,7 +44,12 @@ function usable(parameter: Measured | null): (Measured & { uncertainty: number }
 }
 
 /** Reads x with its u. */
-function judge(x: number, u: number, name: string, enantiopure: boolean): Omit<AbsoluteStructureVerdict, 'parameter'> {
+function judge(
+  x: number,
+  u: number,
+  name: string,
+  enantiopure: boolean,
+): Omit<AbsoluteStructureVerdict, 'parameter'> {
   const shown = `${name} ${figure(x, u)}`;
   const deviations = { fromZero: x / u, fromOne: (1 - x) / u };
   if (u >= ENANTIOPURE_SUFFICIENT - ROUNDING) {
@@ -192,20 +197,29 @@ export function standing(crystal: CrystalDescription, judged: AbsoluteStructureV
     return { scope: 'absolute', text: 'the hand of a macromolecule is known from its residues' };
   }
   if (crystal.sohncke === false) {
-    return { scope: 'racemic', text: 'both hands are in the cell: the letters hold for the molecule as listed and its mirror image alike' };
+    return {
+      scope: 'racemic',
+      text: 'both hands are in the cell: the letters hold for the molecule as listed and its mirror image alike',
+    };
   }
   const declared = crystal.declared ? DECLARED[crystal.declared] : null;
   const reference = crystal.declared === 'rm' || crystal.declared === 'rmad' || crystal.declared === 'syn';
   switch (judged.verdict) {
     case 'established':
-      return { scope: 'absolute', text: `established by diffraction${declared ? `; ${declared}` : ''}. ${ONE_CRYSTAL}` };
+      return {
+        scope: 'absolute',
+        text: `established by diffraction${declared ? `; ${declared}` : ''}. ${ONE_CRYSTAL}`,
+      };
     case 'wrong-hand':
       return {
         scope: 'absolute',
         text: `the data fix the opposite hand: every R is S in the crystal${declared ? `; ${declared}` : ''}. ${ONE_CRYSTAL}`,
       };
     case 'twinned':
-      return { scope: 'relative', text: `an inversion twin: both hands in the crystal${declared ? `; ${declared}` : ''}` };
+      return {
+        scope: 'relative',
+        text: `an inversion twin: both hands in the crystal${declared ? `; ${declared}` : ''}`,
+      };
     default: {
       const first =
         judged.verdict === 'conditional'

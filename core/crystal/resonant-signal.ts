@@ -63,12 +63,16 @@ export interface ResonantSignal {
 }
 
 /** Friedif of a composition. */
-export function friedif(counts: ReadonlyMap<string, number>, values: ReadonlyMap<string, Dispersion>): number | null {
+export function friedif(
+  counts: ReadonlyMap<string, number>,
+  values: ReadonlyMap<string, Dispersion>,
+): number | null {
   let ff = 0;
   let gg = 0;
   let fg = 0;
   for (const [symbol, count] of counts) {
-    const dispersion = values.get(symbol === 'D' ? 'H' : symbol) ?? (symbol === 'H' ? { real: 0, imaginary: 0 } : null);
+    const dispersion =
+      values.get(symbol === 'D' ? 'H' : symbol) ?? (symbol === 'H' ? { real: 0, imaginary: 0 } : null);
     if (!dispersion) return null;
     const f = elementNumber(symbol)! + dispersion.real;
     const g = dispersion.imaginary;

@@ -1,6 +1,7 @@
 /** The record of one checked entry as `check --json` prints it, one object a line; the contract of the command line. */
 import { elementSymbol } from '../chemistry/elements.ts';
 import { atomLabel, IMPLICIT_HYDROGEN, LONE_PAIR, type Molecule } from '../chemistry/molecule.ts';
+import { type CrystalRecord, crystalRecord } from '../crystal/record.ts';
 import type { EntryComparison, UnitVerdict } from '../comparison/compare.ts';
 import type { Descriptor, Docket, LabelledUnit, Relation, RuleName, Verdict } from '../docket.ts';
 import type { Entry } from '../formats/format.ts';
@@ -88,6 +89,8 @@ export interface EntryRecord {
   readonly compound?: string;
   /** The same for entries of one compound and one configuration; where nothing was intended. */
   readonly configuration?: string;
+  /** Of an entry from a crystal structure. */
+  readonly crystal?: CrystalRecord;
   readonly warnings: readonly string[];
   readonly error: ErrorRecord | null;
 }
@@ -108,6 +111,8 @@ export interface EntrySource {
   readonly places: readonly string[] | null;
   /** Firmness that the rings at each unit allow, where the measured one is far below; else null. */
   readonly distorted: readonly (number | null)[];
+  /** Whether the user states that the sample of a crystal is enantiopure. */
+  readonly enantiopure?: boolean;
 }
 
 function round(value: number | null, digits: number): number | null {
@@ -131,10 +136,11 @@ export function entryRecord(source: EntrySource): EntryRecord {
     if (verdict.unit === null) absent.push(verdict);
     else verdicts.set(verdict.unit, verdict);
   }
+  const crystal = entry.crystal ? crystalRecord(entry.crystal, source.enantiopure ?? false) : null;
   const several = docket.molecules.length > 1;
   const moleculeOf = several ? ownerTable(molecule.atomCount, docket) : null;
   const units = docket.units.map((labelled, u) =>
-    unitRecord(source, labelled, u, verdicts.get(u) ?? null, moleculeOf),
+    unitRecord(source, labelled, u, verdicts.get(u) ?? null, moleculeOf, crystal?.scope ?? null),
   );
   for (const verdict of absent) units.push(absentRecord(molecule, verdict));
   return {
@@ -158,6 +164,7 @@ export function entryRecord(source: EntrySource): EntryRecord {
     ...(comparison?.difference && { difference: comparison.difference }),
     ...(source.compound !== null && { compound: source.compound }),
     ...(source.configuration !== null && { configuration: source.configuration }),
+    ...(crystal && { crystal }),
     warnings: [...new Set([...entry.warnings, ...docket.warnings, ...(comparison?.warnings ?? [])])],
     error: source.error,
   };
@@ -208,6 +215,7 @@ function unitRecord(
   index: number,
   verdict: UnitVerdict | null,
   moleculeOf: Int32Array | null,
+  scope: CrystalRecord['scope'] | null,
 ): UnitRecord {
   const { molecule } = source;
   const { unit } = labelled;
@@ -227,6 +235,7 @@ function unitRecord(
     state: unit.state,
     ...(unit.labile !== null && { labile: unit.labile }),
     ...(occupancy < 1 && { occupancy: round(occupancy, 3)! }),
+    ...(scope !== null && { scope }),
     ranking: labelled.ranking.map(({ ligand, rank, decidedBy, sphere, end }) => ({
       atom: ligand >= 0 ? ligand + 1 : null,
       ...(ligand === IMPLICIT_HYDROGEN && { implicit: 'H' as const }),
