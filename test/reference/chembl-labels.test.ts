@@ -38,7 +38,8 @@ function isPhosphazene({ molecule, key }: Difference): boolean {
   return ringsAt[atom]!.some(index =>
     [...rings[index]!].every((member, k, ring) => {
       const next = ring[(k + 1) % ring.length]!;
-      return molecule.elements[member]! + molecule.elements[next]! === 15 + 7;
+      const pair = [molecule.elements[member], molecule.elements[next]];
+      return pair.includes(15) && pair.includes(7);
     }),
   );
 }
@@ -47,7 +48,8 @@ function isPhosphazene({ molecule, key }: Difference): boolean {
 function isSulfilimine({ molecule, key }: Difference): boolean {
   const [first, second] = key.split('-').map(Number) as [number, number | undefined];
   if (second === undefined) return false;
-  return [molecule.elements[first], molecule.elements[second]].sort().join() === '16,7';
+  const elements = [molecule.elements[first], molecule.elements[second]];
+  return elements.includes(16) && elements.includes(7);
 }
 
 /** The units of a docket that nothing decides and that are not labile. */

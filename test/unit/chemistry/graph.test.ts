@@ -74,7 +74,7 @@ describe('rings', () => {
         const { rings, ringsAt, atomRingSize, atomInRing } = ringInfo(molecule);
         const bonded = (i: number, j: number): boolean =>
           [
-            ...molecule.neighbours.subarray(molecule.neighbourStart[i]!, molecule.neighbourStart[i + 1]!),
+            ...molecule.neighbours.subarray(molecule.neighbourStart[i], molecule.neighbourStart[i + 1]),
           ].includes(j);
         const keys = new Set<string>();
         rings.forEach((ring, r) => {
