@@ -8,6 +8,7 @@ import { isMetal } from '../chemistry/elements.ts';
 import { IMPLICIT_HYDROGEN, isLocated, LONE_PAIR, type Molecule } from '../chemistry/molecule.ts';
 import { isAcidTerminal } from '../chemistry/symmetry.ts';
 import { propagated, relativeVolume, signedVolume, signedVolumeGradient } from '../geometry/signed-volume.ts';
+import { isBridgehead } from './bridgeheads.ts';
 import {
   doubleBondsAt,
   isPlainHydrogen,
@@ -182,26 +183,6 @@ function amineReason(context: PerceptionContext, atom: number): string | null {
   if (heavy < 3) return PLANAR;
   if (inThreeRing) return 'the nitrogen of an N-alkyl aziridine inverts';
   return ringBonds === 3 ? 'a nitrogen of ring fusion inverts' : 'a pyramidal amine nitrogen inverts';
-}
-
-/** Whether the rings at an atom with three ring bonds, those up to a size, share more than one bond: a bridgehead, not an atom of ring fusion. */
-export function isBridgehead(
-  context: PerceptionContext,
-  atom: number,
-  largest = Number.POSITIVE_INFINITY,
-): boolean {
-  const { rings } = context;
-  const at = rings.ringsAt[atom]!.filter(index => rings.rings[index]!.length <= largest);
-  for (let i = 0; i < at.length; i++) {
-    for (let j = i + 1; j < at.length; j++) {
-      const other = new Set(rings.rings[at[j]!]);
-      let shared = 0;
-      for (const member of rings.rings[at[i]!]!) if (other.has(member)) shared++;
-      // Two rings that have two atoms in common are fused; three and more, bridged.
-      if (shared >= 3) return true;
-    }
-  }
-  return false;
 }
 
 /** Measures a centre in space. */

@@ -2,7 +2,8 @@
 import type { Molecule } from '../chemistry/molecule.ts';
 import type { Settings } from '../docket.ts';
 import { axisCandidates } from './axes.ts';
-import { type CentreCandidate, centreCandidates, isBridgehead, measureCentre } from './centres.ts';
+import { isBridgehead, isCorner } from './bridgeheads.ts';
+import { type CentreCandidate, centreCandidates, measureCentre } from './centres.ts';
 import { type PerceptionContext, perceptionContext } from './context.ts';
 import { doubleBondCandidates, measurePair, type PairCandidate } from './double-bonds.ts';
 import { drawnCentre, drawnPair } from './drawing.ts';
@@ -43,17 +44,19 @@ export function perceiveUnits(molecule: Molecule, settings: Settings): Perceived
   return { units, warnings: [] };
 }
 
+/** Rings up to this size are looked at for bridgeheads that are held by symmetry. */
+const LARGEST_BRIDGED_RING = 12;
+
 /**
- * A bridgehead, or an atom of a cage where three rings meet (cubane), of which nothing is stated and two bridges of which are alike: its rings, not a choice of configuration,
+ * A bridgehead, or a corner of a cage (cubane), of which nothing is stated and two bridges of which are alike: its rings, not a choice of configuration,
  * hold it as it is. Where coordinates or a notation give it an arrangement, it is taken as given.
  */
 function isHeldBySymmetry(context: PerceptionContext, unit: StereoUnit): boolean {
   if (unit.kind !== 'centre' || unit.sense !== 0 || unit.basis === 'coordinates') return false;
   const { ligands, atom } = unit.ends[0]!;
-  const isCageAtom = context.rings.ringsAt[atom]!.length >= 3;
-  if (!isCageAtom && !isBridgehead(context, atom)) return false;
   const classes = ligands.filter(ligand => ligand >= 0).map(ligand => context.classes[ligand]);
-  return new Set(classes).size < classes.length;
+  if (new Set(classes).size === classes.length) return false;
+  return isCorner(context, atom) || isBridgehead(context, atom, LARGEST_BRIDGED_RING);
 }
 
 function measured(context: PerceptionContext, candidate: Candidate, stated: StatedTable): StereoUnit {
