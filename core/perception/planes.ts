@@ -135,17 +135,27 @@ function bridgePath(context: PerceptionContext, ring: Int32Array, from: number, 
   return null;
 }
 
-/** Measures a plane by the torsion pilot – plane atom – ring atom – first-listed neighbour at its first end. */
+/**
+ * Measures a plane by the torsions pilot – plane atom – ring atom – ring neighbour: the one of the first-listed neighbour at
+ * the first end is reported; sense and firmness come from all four, which alternate in sign.
+ */
 export function measurePlane(context: PerceptionContext, candidate: PlaneCandidate): StereoUnit {
   const { molecule, settings, space } = context;
   const [first, second] = candidate.ends;
-  const atoms = [first.pilot, first.plane, first.ring, first.neighbours[0]];
+  const wanted = candidate.ends.flatMap(end => [end.pilot, end.plane, end.ring, ...end.neighbours]);
   let angle: number | null = null;
-  if (space !== null && atoms.every(atom => isLocated(molecule, atom))) {
-    const measured = torsion(space, first.pilot, first.plane, first.ring, first.neighbours[0]);
-    if (!Number.isNaN(measured)) angle = measured;
+  let sine: number | null = null;
+  if (space !== null && wanted.every(atom => isLocated(molecule, atom))) {
+    const angles = candidate.ends.flatMap(end =>
+      end.neighbours.map(neighbour => torsion(space, end.pilot, end.plane, end.ring, neighbour)),
+    );
+    const sines = angles.map(measured => Math.sin((measured * Math.PI) / 180));
+    const mean = (sines[0]! - sines[1]! - sines[2]! + sines[3]!) / 4;
+    if (!Number.isNaN(mean)) {
+      angle = angles[0]!;
+      sine = mean;
+    }
   }
-  const sine = angle === null ? null : Math.sin((angle * Math.PI) / 180);
   const firmness = sine === null ? null : Math.min(1, Math.abs(sine));
   const state: UnitState =
     firmness === null ? 'unspecified' : firmness < settings.flatFirmness ? 'flat' : 'clear';
