@@ -8,6 +8,10 @@ type Command = { run(args: readonly string[], io: CommandIo): Promise<number> };
 const COMMANDS: Readonly<Record<string, { readonly line: string; load(): Promise<Command> }>> = {
   check: { line: 'handedness of every unit, against the intention', load: () => import('./check.ts') },
   explain: { line: 'how the ligands of one unit were ranked', load: () => import('./explain.ts') },
+  mirror: {
+    line: 'the mirror image of a model, in the right space group',
+    load: () => import('./mirror.ts'),
+  },
 };
 
 function help(): string {
