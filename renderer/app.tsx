@@ -12,7 +12,7 @@ import { LedgerStrip, LedgerTable } from './panels/ledger.tsx';
 import { Notices } from './panels/notices.tsx';
 import { SightPanel } from './panels/sight.tsx';
 import { TEXT } from './text.ts';
-import { ControllerContext, useAppState, useController } from './use-store.ts';
+import { ControllerContext, useAppState, useController, useDerived } from './use-store.ts';
 
 export function App({ controller }: { readonly controller: Controller }): ReactElement {
   return (
@@ -100,26 +100,36 @@ function useDark(theme: 'system' | 'light' | 'dark'): boolean {
   return dark;
 }
 
+/** What a screen reader is told. */
+function Said(): ReactElement {
+  const { announcement } = useAppState('announcement');
+  return (
+    <div className="said" role="status" aria-live="polite">
+      {announcement}
+    </div>
+  );
+}
+
 function Window(): ReactElement {
   const controller = useController();
-  const state = useAppState();
-  const dark = useDark(state.preferences.theme);
+  const { panels, preferences, dialog } = useAppState('panels', 'preferences', 'dialog');
+  const dark = useDark(preferences.theme);
   useKeys(controller);
   const dropping = useIncoming(controller);
-  const { panels, model, progress, rowCount } = state;
-  const idle = progress === null || (progress.done && rowCount === 0);
-  const empty = model === null && idle;
-  const aside = model !== null && (panels.docket || panels.ladder);
+  const hasModel = useDerived(state => state.model !== null);
+  const hasRows = useDerived(state => state.rowCount > 0);
+  const idle = useDerived(state => state.progress === null || (state.progress.done && state.rowCount === 0));
+  const aside = hasModel && (panels.docket || panels.ladder);
   return (
     <div
       className={`window${dropping ? ' dropping' : ''}${panels.ledger ? ' ledger-open' : ''}${aside ? '' : ' no-aside'}`}
     >
-      {rowCount > 0 && !panels.ledger && <LedgerStrip />}
-      {rowCount > 0 && panels.ledger && <LedgerTable />}
+      {hasRows && !panels.ledger && <LedgerStrip />}
+      {hasRows && panels.ledger && <LedgerTable />}
       <main className="middle">
         <Header />
         <Notices />
-        {empty ? <EmptyState /> : <SightPanel dark={dark} />}
+        {!hasModel && idle ? <EmptyState /> : <SightPanel dark={dark} />}
         <p className="limits">{TEXT.limits}</p>
       </main>
       {aside && (
@@ -128,11 +138,9 @@ function Window(): ReactElement {
           {panels.ladder && <LadderPanel />}
         </div>
       )}
-      {state.dialog === 'commands' && <CommandList />}
-      {state.dialog === 'intend' && <IntendDialog />}
-      <div className="said" role="status" aria-live="polite">
-        {state.announcement}
-      </div>
+      {dialog === 'commands' && <CommandList />}
+      {dialog === 'intend' && <IntendDialog />}
+      <Said />
     </div>
   );
 }

@@ -127,7 +127,7 @@ const HISTORY = 500;
 
 const NO_JUDGEMENT: Judgement = { mark: null, remark: '' };
 
-export function judgementOf(state: State, key: string): Judgement {
+export function judgementOf(state: Pick<State, 'present'>, key: string): Judgement {
   return state.present.judgements[key] ?? NO_JUDGEMENT;
 }
 

@@ -10,7 +10,7 @@ import { useAppState, useController } from '../use-store.ts';
 
 export function DocketPanel(): ReactElement {
   const controller = useController();
-  const state = useAppState();
+  const state = useAppState('model', 'unit', 'files', 'present');
   const { model, unit } = state;
   const list = useRef<HTMLUListElement>(null);
   const units = model?.docket?.units ?? [];
@@ -130,7 +130,7 @@ const MARKS: readonly { readonly mark: Mark; readonly command: CommandId; readon
 
 function JudgementForm(): ReactElement | null {
   const controller = useController();
-  const state = useAppState();
+  const state = useAppState('model', 'unit', 'files', 'present');
   const { model, unit, files } = state;
   const field = useRef<HTMLInputElement>(null);
   useEffect(() => {

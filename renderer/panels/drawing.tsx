@@ -21,7 +21,7 @@ interface Made {
 }
 
 export function DrawingPanel(): ReactElement | null {
-  const { model, unit } = useAppState();
+  const { model, unit } = useAppState('model', 'unit');
   const molecule = model?.molecule ?? null;
   const units = model?.docket?.units;
   const [made, setMade] = useState<Made | null>(null);
@@ -60,7 +60,7 @@ function Drawing({
   readonly unit: number;
 }): ReactElement {
   const controller = useController();
-  const { lit } = useAppState();
+  const { lit } = useAppState('lit');
   const scaled = useMemo(() => scale(molecule, layout), [molecule, layout]);
   const wedges = useMemo(() => wedgesFor(molecule, units, layout), [molecule, units, layout]);
   const skeleton = useMemo(() => skeletonOf(molecule, units), [molecule, units]);

@@ -5,7 +5,14 @@ import { useAppState, useController } from '../use-store.ts';
 
 export function Header(): ReactElement {
   const controller = useController();
-  const { files, model, current, rowCount, intention, progress } = useAppState();
+  const { files, model, current, rowCount, intention, progress } = useAppState(
+    'files',
+    'model',
+    'current',
+    'rowCount',
+    'intention',
+    'progress',
+  );
   const file = model ? files[model.file] : files[0];
   const running = progress !== null && !progress.done;
   return (

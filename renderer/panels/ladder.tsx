@@ -7,7 +7,7 @@ import { TEXT } from '../text.ts';
 import { useAppState, useController } from '../use-store.ts';
 
 export function LadderPanel(): ReactElement {
-  const { model, unit, ladder } = useAppState();
+  const { model, unit, ladder } = useAppState('model', 'unit', 'ladder');
   const labelled = model?.docket?.units[unit];
   const molecule = model?.molecule ?? null;
   return (
@@ -55,7 +55,7 @@ function AtomButton({
   readonly atom: number;
 }): ReactElement {
   const controller = useController();
-  const { lit } = useAppState();
+  const { lit } = useAppState('lit');
   const name = ligandName(molecule, atom);
   if (atom < 0) return <span className="atom-name">{name}</span>;
   return (
@@ -170,7 +170,7 @@ function Sets({
 
 function Node({ node, differs }: { readonly node: LadderNode; readonly differs: boolean }): ReactElement {
   const controller = useController();
-  const { lit } = useAppState();
+  const { lit } = useAppState('lit');
   const name = `node${differs ? ' differs' : ''}${node.nature === 'real' ? '' : ' duplicate'}${lit !== null && lit === node.atom ? ' lit' : ''}`;
   if (node.atom < 0) return <span className={name}>{node.text}</span>;
   return (

@@ -10,11 +10,14 @@ import {
   useState,
 } from 'react';
 import { measure, TEXT, figure } from '../text.ts';
-import { useAppState, useController } from '../use-store.ts';
-import type { Finding, Row } from '../worker/protocol.ts';
+import { useAppState, useController, useThrottled } from '../use-store.ts';
+import { type Finding, FINDINGS, type Row } from '../worker/protocol.ts';
 import { LEDGER_COLUMNS, type LedgerColumn, ledgerRows } from './ledger-order.ts';
 
 const ROW_HEIGHT = 28;
+const URGENCY = Object.fromEntries(FINDINGS.map((finding, k) => [finding, k])) as Record<Finding, number>;
+/** How often strip and table follow a running batch, ms. */
+const FOLLOW = 250;
 /** Tallest line of the strip, px. */
 const LINE = 9;
 
@@ -25,7 +28,13 @@ function lineHeight(count: number, height: number): number {
 
 export function LedgerStrip(): ReactElement {
   const controller = useController();
-  const { rows, rowCount, current, preferences } = useAppState();
+  const {
+    rows,
+    rowCount: read,
+    current,
+    preferences,
+  } = useAppState('rows', 'rowCount', 'current', 'preferences');
+  const rowCount = Math.min(rows.length, useThrottled(read, FOLLOW));
   const canvas = useRef<HTMLCanvasElement>(null);
   const [size, setSize] = useState({ width: 40, height: 400 });
   const doubtful = useMemo(() => {
@@ -65,11 +74,19 @@ export function LedgerStrip(): ReactElement {
         for (let x = 0; x < full; x += 6) context.fillRect(6 + x, y, 3.5, Math.max(1, h));
       } else context.fillRect(6, y, full, Math.max(finding === 'none' ? 0.6 : 1.5, h));
     };
+    // Where several entries fall on one line of pixels, the most urgent finding is the one that shows.
+    const least = Math.max(1, step);
+    const lines = new Map<number, { finding: Finding; y: number }>();
+    for (let i = 0; i < rowCount; i++) {
+      const { finding } = rows[i]!;
+      const line = Math.floor((i * step) / least);
+      const before = lines.get(line);
+      if (!before || URGENCY[finding] < URGENCY[before.finding]) lines.set(line, { finding, y: i * step });
+    }
     // What matters is drawn last, so that no ordinary line covers it.
     for (const urgent of [false, true]) {
-      for (let i = 0; i < rowCount; i++) {
-        const { finding } = rows[i]!;
-        if ((finding === 'inverted') === urgent) draw(finding, i * step);
+      for (const { finding, y } of lines.values()) {
+        if ((finding === 'inverted') === urgent) draw(finding, y);
       }
     }
     if (current >= 0) {
@@ -100,7 +117,8 @@ export function LedgerStrip(): ReactElement {
 
 export function LedgerTable(): ReactElement {
   const controller = useController();
-  const { rows, rowCount, current } = useAppState();
+  const { rows, rowCount: read, current } = useAppState('rows', 'rowCount', 'current');
+  const rowCount = Math.min(rows.length, useThrottled(read, FOLLOW));
   const [column, setColumn] = useState<LedgerColumn>('entry');
   const [descending, setDescending] = useState(false);
   const [words, setWords] = useState('');

@@ -5,7 +5,7 @@ import { useAppState, useController } from '../use-store.ts';
 
 export function Notices(): ReactElement | null {
   const { store } = useController();
-  const { problems, changes } = useAppState();
+  const { problems, changes } = useAppState('problems', 'changes');
   if (problems.length === 0 && changes.length === 0) return null;
   return (
     <section className="notices" role="alert" aria-label="Notices">

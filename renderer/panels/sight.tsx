@@ -1,5 +1,13 @@
 /** The sight with its caption: the canvas, the dial over it, and the sentence that says what one looks at. */
-import { type KeyboardEvent, type PointerEvent, type ReactElement, useEffect, useMemo, useRef } from 'react';
+import {
+  type KeyboardEvent,
+  type PointerEvent,
+  type ReactElement,
+  useEffect,
+  useLayoutEffect,
+  useMemo,
+  useRef,
+} from 'react';
 import { caption, unitName } from '../caption.ts';
 import { Glyph } from '../glyph.tsx';
 import { type SightContent, SightView } from '../sight/view.ts';
@@ -13,8 +21,8 @@ const PRESS = 0.12;
 
 export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
   const controller = useController();
-  const state = useAppState();
-  const { model, unit, side, preferences, lit } = state;
+  const state = useAppState('model', 'unit', 'side', 'preferences', 'lit', 'mirror', 'panels');
+  const { model, unit, side, preferences, lit, mirror } = state;
   const frame = useRef<HTMLDivElement>(null);
   const canvas = useRef<HTMLCanvasElement>(null);
   const overlay = useRef<SVGSVGElement>(null);
@@ -23,13 +31,14 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
   const shown = model?.verdicts[unit] ?? null;
   const molecule = model?.molecule ?? null;
   const inSpace = molecule !== null && molecule.dimension === 3;
+  const intended = shown?.verdict === 'inverted' ? shown.intended : null;
   const words = molecule && labelled ? caption(molecule, labelled, shown, side) : '';
   const content = useMemo<SightContent | null>(
-    () => (molecule && inSpace ? { molecule, labelled, caption: words } : null),
-    [molecule, inSpace, labelled, words],
+    () => (molecule && inSpace ? { molecule, labelled, caption: words, intended } : null),
+    [molecule, inSpace, labelled, words, intended],
   );
 
-  useEffect(() => {
+  useLayoutEffect(() => {
     if (!canvas.current || !overlay.current || !frame.current) return undefined;
     const made = new SightView(canvas.current, overlay.current, {
       onPick: atom => controller.light(atom),
@@ -49,13 +58,13 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
     };
   }, [controller]);
 
-  useEffect(() => {
+  useLayoutEffect(() => {
     const still = !preferences.motion || matchMedia('(prefers-reduced-motion: reduce)').matches;
     const { hydrogens, labels } = preferences;
-    view.current?.setLook({ dark, hydrogens, labels, motion: !still, lit });
-  }, [dark, preferences, lit]);
+    view.current?.setLook({ dark, hydrogens, labels, motion: !still, lit, mirror });
+  }, [dark, preferences, lit, mirror]);
 
-  useEffect(() => {
+  useLayoutEffect(() => {
     view.current?.show(content);
   }, [content]);
 
@@ -121,7 +130,7 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
         onKeyDown={onKey}
       >
         <canvas ref={canvas} aria-hidden="true" />
-        <svg ref={overlay} role="img" aria-label={words} data-side={side} />
+        <svg ref={overlay} className="dial" role="img" aria-label={words} data-side={side} />
         {molecule && labelled && (
           <div className="sight-title">
             <Glyph

@@ -4,9 +4,9 @@ import type { Dial, Numeral } from './dial.ts';
 export interface DialDrawing {
   readonly dial: Dial;
   readonly descriptor: string | null;
-  /** px. */
-  readonly width: number;
-  readonly height: number;
+  /** Where the middle of the dial stands, px. */
+  readonly x: number;
+  readonly y: number;
   /** px for one Å. */
   readonly scale: number;
   readonly labels: readonly {
@@ -15,7 +15,8 @@ export interface DialDrawing {
     readonly y: number;
     readonly lit: boolean;
   }[];
-  readonly side: 'sight' | 'far' | 'free';
+  /** A second, broken sweep the other way: what was intended where the centre is inverted; null for none. */
+  readonly intended: string | null;
   readonly name: (ligand: number) => string;
 }
 
@@ -45,12 +46,9 @@ const TICKS = [9, 16, 24] as const;
 const NUMERAL = 14;
 const SWEEP_GAP = 26;
 
-export function drawDial(svg: SVGSVGElement, drawing: DialDrawing): void {
-  const { dial, width, height, scale, descriptor } = drawing;
-  svg.setAttribute('viewBox', `0 0 ${width} ${height}`);
-  svg.setAttribute('class', `dial ${senseClass(descriptor)}`);
-  const cx = width / 2;
-  const cy = height / 2;
+/** One dial as a group, with the hue of its letter. */
+export function dialGroup(drawing: DialDrawing): SVGElement {
+  const { dial, scale, descriptor, x: cx, y: cy } = drawing;
   const radius = dial.radius * scale;
   const at = (angle: number, r: number): [number, number] => [
     cx + r * Math.cos(angle),
@@ -119,7 +117,13 @@ export function drawDial(svg: SVGSVGElement, drawing: DialDrawing): void {
       }),
     );
   }
-  if (dial.sweep) parts.push(...sweepArc(dial.sweep.from, dial.sweep.turn, cx, cy, radius + SWEEP_GAP));
+  if (dial.sweep) {
+    const { from, turn } = dial.sweep;
+    parts.push(...sweepArc(from, turn, cx, cy, radius + SWEEP_GAP));
+    if (drawing.intended !== null) {
+      parts.push(...intendedArc(from, turn, cx, cy, radius + SWEEP_GAP + 17, drawing.intended));
+    }
+  }
   for (const label of drawing.labels) {
     parts.push(
       element(
@@ -144,7 +148,14 @@ export function drawDial(svg: SVGSVGElement, drawing: DialDrawing): void {
   }
   const fourth = dial.numerals.find(one => !one.onRing);
   if (fourth) parts.push(...fourthMark(fourth, dial, drawing, at, radius));
-  svg.replaceChildren(...parts);
+  const group = element('g', { class: `dial-group ${senseClass(descriptor)}` });
+  group.append(...parts);
+  return group;
+}
+
+/** Words under a dial that say what it belongs to. */
+export function dialWords(x: number, y: number, text: string): SVGElement {
+  return element('text', { x, y, class: 'dial-words' }, text);
 }
 
 /** Numerals pushed apart where two ligands project to nearly the same place. */
@@ -190,6 +201,46 @@ function sweepArc(from: number, turn: number, cx: number, cy: number, r: number)
       d: `M ${point(end, r)} L ${point(neck, r + 6.5)} L ${point(neck, r - 6.5)} Z`,
       class: 'dial-head',
     }),
+  ];
+}
+
+/** The sweep that was asked for, where what was found runs the other way. */
+function intendedArc(
+  from: number,
+  found: number,
+  cx: number,
+  cy: number,
+  r: number,
+  letter: string,
+): SVGElement[] {
+  const sign = -(Math.sign(found) || 1);
+  const end = from + sign * 0.85;
+  const point = (angle: number, radius: number): string =>
+    `${(cx + radius * Math.cos(angle)).toFixed(2)} ${(cy - radius * Math.sin(angle)).toFixed(2)}`;
+  const start = from + sign * 0.08;
+  const neck = end - sign * (13 / r);
+  const words = from + sign * 0.5;
+  const anchor = Math.cos(words) > 0 ? 'start' : 'end';
+  return [
+    element('path', {
+      d: `M ${point(start, r)} A ${r.toFixed(2)} ${r.toFixed(2)} 0 0 ${sign < 0 ? 1 : 0} ${point(neck, r)}`,
+      class: 'dial-intended',
+      'data-turn': sign < 0 ? 'clockwise' : 'anticlockwise',
+    }),
+    element('path', {
+      d: `M ${point(end, r)} L ${point(neck, r + 5)} L ${point(neck, r - 5)} Z`,
+      class: 'dial-intended-head',
+    }),
+    element(
+      'text',
+      {
+        x: cx + (r + 10) * Math.cos(words),
+        y: cy - (r + 10) * Math.sin(words),
+        class: 'dial-intended-words',
+        'text-anchor': anchor,
+      },
+      `intended ${letter}`,
+    ),
   ];
 }
 

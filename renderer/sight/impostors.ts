@@ -2,6 +2,7 @@
 import {
   BufferAttribute,
   Color,
+  DoubleSide,
   GLSL3,
   InstancedBufferAttribute,
   InstancedBufferGeometry,
@@ -201,6 +202,8 @@ function material(uniforms: InkUniforms, vertexShader: string, fragmentShader: s
     fragmentShader,
     uniforms: uniforms.values,
     toneMapped: false,
+    // A mirror image turns the faces round; each ray is cast from one face of the quad all the same.
+    side: DoubleSide,
   });
 }
 

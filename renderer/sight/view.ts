@@ -11,11 +11,11 @@ import {
 } from 'three';
 import { elementSymbol } from '../../core/chemistry/elements.ts';
 import { atomLabel, isLocated, type Molecule } from '../../core/chemistry/molecule.ts';
-import type { LabelledUnit } from '../../core/docket.ts';
+import type { Descriptor, LabelledUnit } from '../../core/docket.ts';
 import { type SightFrame, sightFrame } from '../../core/record/sight-frame.ts';
 import { DARK, LIGHT } from './colours.ts';
 import { dialOf } from './dial.ts';
-import { type DialDrawing, drawDial } from './dial-drawing.ts';
+import { dialGroup, dialWords } from './dial-drawing.ts';
 import { ballMesh, InkUniforms, rodMesh } from './impostors.ts';
 import { modelGeometry, unitAtoms } from './model-geometry.ts';
 
@@ -40,6 +40,8 @@ export interface SightContent {
   readonly molecule: Molecule;
   readonly labelled: LabelledUnit | null;
   readonly caption: string;
+  /** The letter that was asked for where the found one is inverted. */
+  readonly intended: string | null;
 }
 
 export interface SightLook {
@@ -48,6 +50,8 @@ export interface SightLook {
   readonly labels: boolean;
   readonly motion: boolean;
   readonly lit: number | null;
+  /** Whether the mirror image stands beside the model. */
+  readonly mirror: boolean;
 }
 
 export interface SightEvents {
@@ -59,6 +63,12 @@ interface Pose {
   readonly turn: Quaternion;
   readonly pivot: Vector3;
   readonly halfHeight: number;
+}
+
+/** The letter of the mirror image: R/S, M/P and e/z change; r/s, m/p and E/Z stay. */
+export function mirrorDescriptor(descriptor: Descriptor | null): Descriptor | null {
+  const swaps: Partial<Record<Descriptor, Descriptor>> = { R: 'S', S: 'R', M: 'P', P: 'M', e: 'z', z: 'e' };
+  return descriptor === null ? null : (swaps[descriptor] ?? descriptor);
 }
 
 const ease = (t: number): number => (t < 0.5 ? 4 * t * t * t : 1 - (-2 * t + 2) ** 3 / 2);
@@ -93,7 +103,8 @@ export class SightView {
   readonly #renderer: WebGLRenderer;
   readonly #scene = new Scene();
   readonly #camera = new PerspectiveCamera(FIELD, 1, 1, 1000);
-  /** Scene > rotation > model, as the surroundings' viewer has it. */
+  /** Scene > rotation > model, as the surroundings' viewer has it; the outermost makes the mirror image. */
+  readonly #reflection = new Group();
   readonly #rotation = new Group();
   readonly #model = new Group();
   readonly #uniforms = new InkUniforms();
@@ -101,7 +112,7 @@ export class SightView {
   readonly #events: SightEvents;
   #meshes: Mesh[] = [];
   #content: SightContent | null = null;
-  #look: SightLook = { dark: false, hydrogens: false, labels: true, motion: true, lit: null };
+  #look: SightLook = { dark: false, hydrogens: false, labels: true, motion: true, lit: null, mirror: false };
   #pose: Pose = { turn: new Quaternion(), pivot: new Vector3(), halfHeight: HALF_HEIGHT };
   #home: Pose = this.#pose;
   #side: Side = 'sight';
@@ -125,7 +136,8 @@ export class SightView {
     this.#events = events;
     this.#camera.position.set(0, 0, CAMERA_DISTANCE);
     this.#rotation.add(this.#model);
-    this.#scene.add(this.#rotation);
+    this.#reflection.add(this.#rotation);
+    this.#scene.add(this.#reflection);
   }
 
   dispose(): void {
@@ -304,6 +316,7 @@ export class SightView {
   }
 
   #request(): void {
+    this.#svg.dataset['still'] = 'false';
     if (this.#frame === 0) this.#frame = requestAnimationFrame(this.#tick);
   }
 
@@ -358,8 +371,16 @@ export class SightView {
     this.#renderer.autoClear = false;
     const gl = this.#renderer.getContext();
     gl.clear(gl.COLOR_BUFFER_BIT | gl.DEPTH_BUFFER_BIT);
-    this.#scene.updateMatrixWorld();
-    this.#renderer.render(this.#scene, this.#camera);
+    const panes = this.#panes();
+    panes.forEach((pane, p) => {
+      this.#reflection.scale.x = p === 0 ? 1 : -1;
+      this.#camera.aspect = pane.width / this.#height;
+      this.#camera.updateProjectionMatrix();
+      this.#renderer.setViewport(pane.left, 0, pane.width, this.#height);
+      this.#renderer.setScissor(pane.left, 0, pane.width, this.#height);
+      this.#renderer.setScissorTest(panes.length > 1);
+      this.#renderer.render(this.#scene, this.#camera);
+    });
     this.#overlay();
   }
 
@@ -371,12 +392,22 @@ export class SightView {
       .applyQuaternion(this.#pose.turn);
     const distance = distanceFor(this.#halfHeight());
     const k = (this.#pixelsPerUnit() * distance) / Math.max(0.1, distance - p.z);
-    return [this.#width / 2 + k * p.x, this.#height / 2 - k * p.y, p.z];
+    return [this.#panes()[0]!.width / 2 + k * p.x, this.#height / 2 - k * p.y, p.z];
+  }
+
+  /** The parts of the view: the model, and its mirror image to the right of it when wanted. */
+  #panes(): readonly { readonly left: number; readonly width: number }[] {
+    if (!this.#look.mirror) return [{ left: 0, width: this.#width }];
+    const half = Math.floor(this.#width / 2);
+    return [
+      { left: 0, width: half },
+      { left: half, width: half },
+    ];
   }
 
   /** Half the height of the view, Å: more where the view is narrow, so that dial and words keep their room. */
   #halfHeight(): number {
-    const aspect = this.#width / this.#height;
+    const aspect = this.#panes()[0]!.width / this.#height;
     return this.#pose.halfHeight * this.#zoom * Math.max(1, LEAST_ASPECT / aspect);
   }
 
@@ -416,17 +447,35 @@ export class SightView {
       const [x, y] = this.#project(atom);
       labels.push({ text: atomLabel(molecule, atom, elementSymbol), x, y, lit: atom === this.#look.lit });
     }
-    const drawing: DialDrawing = {
-      dial,
-      descriptor: labelled.descriptor,
-      width: this.#width,
-      height: this.#height,
-      scale: this.#pixelsPerUnit(),
-      labels,
-      side: this.#side,
-      name: ligand => atomLabel(molecule, ligand, elementSymbol),
-    };
-    drawDial(this.#svg, drawing);
+    const name = (ligand: number): string => atomLabel(molecule, ligand, elementSymbol);
+    const scale = this.#pixelsPerUnit();
+    const y = this.#height / 2;
+    const [left, right] = this.#panes();
+    const x = left!.width / 2;
+    const { descriptor } = labelled;
+    const groups = [dialGroup({ dial, descriptor, x, y, scale, labels, name, intended: content.intended })];
+    if (right) {
+      const [rx, ry, rz] = frame.right;
+      const mirrored = dialOf(molecule, labelled, { ...frame, right: [-rx, -ry, -rz] });
+      const other = mirrorDescriptor(descriptor);
+      const centre = right.left + right.width / 2;
+      groups.push(
+        dialGroup({
+          dial: mirrored,
+          descriptor: other,
+          x: centre,
+          y,
+          scale,
+          labels: labels.map(label => ({ ...label, x: 2 * x - label.x + right.left })),
+          name,
+          intended: null,
+        }),
+        dialWords(x, this.#height - 14, `model, ${descriptor ?? 'no letter'}`),
+        dialWords(centre, this.#height - 14, `mirror image, ${other ?? 'no letter'}`),
+      );
+    }
+    this.#svg.setAttribute('viewBox', `0 0 ${this.#width} ${this.#height}`);
+    this.#svg.replaceChildren(...groups);
     this.#svg.setAttribute('aria-label', content.caption);
   }
 }

@@ -1,0 +1,282 @@
+/** What the window opens and how: bad input, drop, paste, arguments, intentions, sessions, watching, large files with cancel. */
+import { mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
+import type { Browser, Page } from 'playwright-core';
+import { afterAll, afterEach, beforeAll, beforeEach, describe, expect, test } from 'vitest';
+import { demoFiles, launchBrowser, openWindow, outputFolder, type OpenedWindow } from './launch.ts';
+import { atRest, picture, readDial, runOf, violations } from './window.ts';
+
+let browser: Browser;
+let opened: OpenedWindow | null = null;
+let folder: string;
+
+beforeAll(async () => {
+  browser = await launchBrowser();
+});
+afterAll(async () => {
+  await browser.close();
+});
+beforeEach(() => {
+  folder = mkdtempSync(join(tmpdir(), 'deasil-open-'));
+});
+afterEach(async () => {
+  const complaints = opened?.complaints ?? [];
+  await opened?.close();
+  opened = null;
+  rmSync(folder, { recursive: true, force: true });
+  expect(complaints).toEqual([]);
+});
+
+const models = readFileSync(demoFiles().find(path => path.endsWith('.sdf'))!, 'utf8');
+const entries = models.split(/(?<=\$\$\$\$\r?\n)/u).filter(text => text.trim() !== '');
+
+function file(name: string, content: string | Uint8Array): string {
+  const path = join(folder, name);
+  writeFileSync(path, content);
+  return path;
+}
+
+async function open(...paths: string[]): Promise<Page> {
+  opened = await openWindow(paths, { browser, reducedMotion: 'reduce' });
+  return opened.page;
+}
+
+/** Drops files on the page, as a file manager does. */
+async function drop(page: Page, files: readonly { name: string; text: string }[]): Promise<void> {
+  await page.evaluate(
+    list => {
+      const transfer = new DataTransfer();
+      for (const { name, text } of list) transfer.items.add(new File([text], name));
+      document.body.dispatchEvent(
+        new DragEvent('drop', { dataTransfer: transfer, bubbles: true, cancelable: true }),
+      );
+    },
+    [...files],
+  );
+}
+
+async function paste(page: Page, text: string): Promise<void> {
+  await page.evaluate(content => {
+    const transfer = new DataTransfer();
+    transfer.setData('text/plain', content);
+    document.body.dispatchEvent(
+      new ClipboardEvent('paste', { clipboardData: transfer, bubbles: true, cancelable: true }),
+    );
+  }, text);
+}
+
+describe('bad input', () => {
+  test.each([
+    ['empty.sdf', '', /empty\.sdf: the file is empty/u],
+    [
+      'binary.sdf',
+      Uint8Array.from({ length: 4000 }, (_, k) => (k * 37) % 256),
+      /binary\.sdf: a binary file/u,
+    ],
+    ['notes.txt', 'nothing of the kind\nat all, really\n', /notes\.txt/u],
+  ])('%s: a message that names the file', async (name, content, expected) => {
+    const page = await open(file(name, content));
+    await page.getByText(expected).first().waitFor();
+  });
+
+  test('a truncated entry among good ones is named with entry and line; the others are checked', async () => {
+    const cut = `${entries[1]!.split('\n').slice(0, 20).join('\n')}\n$$$$\n`;
+    const page = await open(file('mixed.sdf', entries[0]! + cut + entries[2]!));
+    await atRest(page);
+    await page.keyboard.press('l');
+    const ledger = page.getByRole('grid', { name: 'Ledger' });
+    await expect.poll(() => ledger.getByRole('row').count()).toBe(4);
+    expect(await ledger.getByRole('row').nth(2).textContent()).toMatch(/line \d+: /u);
+    await page.keyboard.press(']');
+    await page.getByText(/Entry 2, line \d+, could not be read/u).waitFor();
+    await picture(page, 'unreadable-entry-light');
+    expect(await violations(page)).toEqual([]);
+    await page.keyboard.press(']');
+    await page.getByRole('option').first().waitFor();
+  });
+
+  test.each([
+    ['an unknown element', (text: string) => text.replace(/ C {3}0/u, ' Qx  0')],
+    [
+      'a bond to an atom that is not there',
+      (text: string) => text.replace(/^( {2}\d| \d\d)( {2}\d| \d\d)( {2}\d {2}0.*)$/mu, '$1 99$3'),
+    ],
+    ['coordinates that are no numbers', (text: string) => text.replace(/^ {4}2\.2969/mu, '       NaN')],
+  ])('%s: said of the entry, with its line', async (_, spoil) => {
+    const bad = spoil(entries[0]!);
+    expect(bad).not.toBe(entries[0]);
+    const page = await open(file('bad.sdf', bad + entries[1]!));
+    await expect.poll(() => page.locator('.head-entry').textContent()).toContain('of 2');
+    const alert = page.getByText(/could not be read|not a number|no number|located|coordinates/u).first();
+    await alert.waitFor();
+    await page.keyboard.press(']');
+    await page.getByRole('option').first().waitFor();
+  });
+
+  test('a model without coordinates in space: no sight, and it is said why', async () => {
+    const flat = entries[0]!.replaceAll(
+      /^ *-?\d+\.\d{4} *-?\d+\.\d{4} *-?\d+\.\d{4}/gmu,
+      '    0.0000    0.0000    0.0000',
+    );
+    const page = await open(file('zero.sdf', flat));
+    await page.locator('.sight-message').first().waitFor();
+    expect(await page.getByRole('option').count()).toBeGreaterThanOrEqual(0);
+  });
+});
+
+describe('opening', () => {
+  test('dropped files replace what is open; a notation dropped with models is their intention', async () => {
+    const page = await open();
+    await drop(page, [
+      { name: 'poses.sdf', text: models },
+      { name: 'wanted.smi', text: readFileSync(demoFiles().find(path => path.endsWith('.smi'))!, 'utf8') },
+    ]);
+    await page.getByText('intended: wanted.smi').waitFor();
+    await page.getByRole('option').filter({ hasText: 'agrees' }).first().waitFor();
+  });
+
+  test('a pasted SMILES gives its letters from the notation', async () => {
+    const page = await open();
+    await paste(page, 'C[C@H](N)C(=O)O');
+    await page.getByRole('option').filter({ hasText: 'S' }).waitFor();
+    await page
+      .getByText('There is no sight', { exact: false })
+      .or(page.getByText('there is no sight', { exact: false }))
+      .first()
+      .waitFor();
+    await page.getByRole('region', { name: 'Drawing' }).getByRole('img').waitFor();
+    await picture(page, 'notation-light');
+    expect(await violations(page)).toEqual([]);
+  });
+
+  test('a pasted Molfile is read as one', async () => {
+    const page = await open();
+    await paste(page, entries[0]!.slice(0, entries[0]!.indexOf('M  END') + 7));
+    await atRest(page);
+    expect(runOf(await readDial(page))).toBe('clockwise');
+  });
+
+  test('an intention stated as text is judged at once, and withdrawn', async () => {
+    const page = await open(file('poses.sdf', models));
+    await page.getByRole('option').first().waitFor();
+    await page.keyboard.press('Control+i');
+    await page.getByRole('textbox', { name: 'Intended configuration' }).fill('C4=R');
+    await page.keyboard.press('Enter');
+    await page.getByRole('option').filter({ hasText: 'inverted' }).waitFor();
+    await page.keyboard.press('Control+k');
+    await page.getByRole('combobox').fill('withdraw');
+    await page.keyboard.press('Enter');
+    await expect.poll(() => page.getByRole('option').filter({ hasText: 'inverted' }).count()).toBe(0);
+  });
+
+  test('an intention that is nonsense is refused with the reason', async () => {
+    const page = await open(file('poses.sdf', models));
+    await page.getByRole('option').first().waitFor();
+    await page.keyboard.press('Control+i');
+    await page.getByRole('textbox', { name: 'Intended configuration' }).fill('C((');
+    await page.keyboard.press('Enter');
+    await page
+      .getByRole('alert')
+      .getByText(/neither descriptors on units .* nor a SMILES/u)
+      .waitFor();
+  });
+
+  test('judgements are kept beside the input and restored', async () => {
+    const path = file('poses.sdf', models);
+    const page = await open(path);
+    await page.getByRole('option').first().waitFor();
+    await page.keyboard.press('a');
+    await page.getByRole('button', { name: 'Accept', pressed: true }).waitFor();
+    await page.waitForTimeout(1200);
+    await page.reload();
+    await page.getByRole('button', { name: 'Accept', pressed: true }).waitFor();
+  });
+
+  test('a file that is written again is read again, and what changed hand is said', async () => {
+    const path = file('refined.sdf', entries[0]!);
+    const page = await open(path);
+    await page.getByRole('option').first().waitFor();
+    await page.waitForTimeout(300);
+    writeFileSync(path, entries[1]!.replace('model 2', 'model 1'));
+    await page.getByText(/RSSRE became RRSRE/u).waitFor({ timeout: 15_000 });
+    await picture(page, 'changed-light');
+  });
+
+  test('steps through poses with the same centre held in the middle', async () => {
+    const page = await open(...demoFiles());
+    await page.getByRole('option').first().waitFor();
+    await page.keyboard.press('j');
+    await page.keyboard.press(']');
+    await expect.poll(() => page.locator('.head-entry').textContent()).toContain('entry 2');
+    await expect.poll(() => page.getByRole('option', { selected: true }).textContent()).toContain('C4');
+  });
+});
+
+describe('many entries', () => {
+  /** A campaign of many poses; every five hundredth has an inverted centre. */
+  function many(count: number): string {
+    const parts: string[] = [];
+    for (let k = 1; k <= count; k++) parts.push(k % 500 === 0 ? entries[1]! : entries[0]!);
+    return file('many.sdf', parts.join(''));
+  }
+
+  test('20,000 entries: the first inverted pose is soon in the sight, and no task of the window is long', async () => {
+    const count = 20_000;
+    const page = await open();
+    const text = readFileSync(many(count), 'utf8');
+    const smiles = readFileSync(demoFiles().find(path => path.endsWith('.smi'))!, 'utf8');
+    await page.evaluate(() => {
+      const list: number[] = [];
+      Reflect.set(globalThis, 'longTasks', list);
+      new PerformanceObserver(seen => {
+        const since = Number(Reflect.get(globalThis, 'since') ?? Infinity);
+        for (const entry of seen.getEntries()) if (entry.startTime > since) list.push(entry.duration);
+      }).observe({ entryTypes: ['longtask'] });
+    });
+    await drop(page, [
+      { name: 'many.sdf', text },
+      { name: 'wanted.smi', text: smiles },
+    ]);
+    // Building the files in the page is the test's own work.
+    await page.evaluate(() => Reflect.set(globalThis, 'since', performance.now()));
+    const dropped = Date.now();
+    await page.getByRole('option').first().waitFor({ timeout: 60_000 });
+    const first = Date.now() - dropped;
+    await expect.poll(() => page.locator('.strip-doubtful').textContent(), { timeout: 60_000 }).not.toBe('');
+    await page.keyboard.press('Shift+D');
+    await page.getByRole('option', { selected: true }).filter({ hasText: 'inverted' }).waitFor();
+    await atRest(page);
+    const inverted = Date.now() - dropped;
+    // The window answers while the batch runs.
+    await page.keyboard.press('l');
+    await page.getByRole('grid', { name: 'Ledger' }).waitFor();
+    await page.getByRole('searchbox').fill('inverted');
+    await page.waitForTimeout(1500);
+    const tasks = await page.evaluate(() => Reflect.get(globalThis, 'longTasks') as number[]);
+    await page.getByRole('searchbox').fill('');
+    await expect
+      .poll(() => page.locator('.head-progress').count(), { timeout: 110_000, interval: 500 })
+      .toBe(0);
+    const whole = Date.now() - dropped;
+    expect(await page.getByRole('grid').getAttribute('aria-rowcount')).toBe(String(count + 1));
+    await picture(page, 'many-light');
+    writeFileSync(
+      join(outputFolder, 'many.json'),
+      JSON.stringify({ count, first, inverted, whole, longTasks: tasks.map(Math.round) }),
+    );
+    // The figures are for the record, a busy machine stretches them; a window that is blocked is a defect all the same.
+    expect(tasks.filter(duration => duration > 400)).toEqual([]);
+  });
+
+  test('stopping keeps what was read', async () => {
+    const page = await open(many(20_000));
+    await page.getByRole('button', { name: 'Stop' }).click();
+    await expect.poll(() => page.locator('.head-progress').count()).toBe(0);
+    const rows = await page.locator('.strip-open b').textContent();
+    expect(Number(rows!.replaceAll(/\D/gu, ''))).toBeGreaterThan(0);
+    expect(Number(rows!.replaceAll(/\D/gu, ''))).toBeLessThan(20_000);
+    await page.keyboard.press('j');
+    await atRest(page);
+  });
+});
