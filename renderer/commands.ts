@@ -81,11 +81,8 @@ export function keysOf(event: {
 }): string {
   const single = event.key.length === 1;
   const letter = single && event.key.toLowerCase() !== event.key.toUpperCase();
-  const main = letter
-    ? event.ctrlKey || event.metaKey || event.shiftKey
-      ? event.key.toUpperCase()
-      : event.key
-    : event.key;
+  const upper = event.ctrlKey || event.metaKey || event.shiftKey;
+  const main = letter ? (upper ? event.key.toUpperCase() : event.key.toLowerCase()) : event.key;
   const parts: string[] = [];
   if (event.ctrlKey || event.metaKey) parts.push('Ctrl');
   if (event.altKey) parts.push('Alt');
