@@ -36,9 +36,13 @@ export function perceiveUnits(molecule: Molecule, settings: Settings): Perceived
     candidates.push({ kind: 'pair', pair, ends });
   }
   const stated = statedTable(molecule);
-  const units = prune(context, candidates)
-    .map(candidate => measured(context, candidate, stated))
-    .filter(unit => !isHeldBySymmetry(context, unit));
+  const all = prune(context, candidates).map(candidate => measured(context, candidate, stated));
+  let units = all.filter(unit => !isHeldBySymmetry(context, unit));
+  if (units.length < all.length) {
+    // Without the held ones, others of which nothing is known may have nothing left to tell their ligands apart.
+    const separable = new Set(prune(context, units));
+    units = units.filter(unit => unit.sense !== 0 || unit.basis === 'coordinates' || separable.has(unit));
+  }
   for (const helix of helixCandidates(context)) units.push(measureHelix(context, helix));
   for (const plane of planeCandidates(context)) units.push(measurePlane(context, plane));
   return { units, warnings: [] };

@@ -68,6 +68,22 @@ describe('nitrogen', () => {
   });
 });
 
+describe('bridged rings of which nothing is stated', () => {
+  it.each([
+    ['bicyclo[2.2.2]octane', 'C1CC2CCC1CC2', []],
+    ['adamantane', 'C1C2CC3CC1CC(C2)C3', []],
+    ['cubane', 'C12C3C4C1C5C2C3C45', []],
+    ['7-methylnorbornane, its two bridges alike', 'CC1C2CCC1CC2', []],
+    ['7-methylnorbornene, syn or anti', 'CC1C2CCC1C=C2', [1, 2, 5]],
+    ['tropine, endo or exo', 'OC1CC2CCC(C1)N2C', [1, 3, 6]],
+    ['2-methylnorbornane', 'CC1CC2CCC1C2', [1, 3, 6]],
+    ['decalin', 'C1CCC2CCCCC2C1', [3, 8]],
+  ])('%s', (_, text, centres) => {
+    const found = read(text).filter(unit => unit.labile === null);
+    expect(found.map(unit => unit.atoms[0])).toEqual(centres);
+  });
+});
+
 describe('what cannot be a tetrahedron', () => {
   it('a sulfurane of four single bonds is none, a sulfoximine is', () => {
     expect(read('CS(F)(Cl)CC')).toEqual([]);
