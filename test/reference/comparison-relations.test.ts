@@ -8,6 +8,8 @@ import { describe, expect, it } from 'vitest';
 import { renumbered, compared } from '../unit/comparison/models.ts';
 import { parseSmiles } from '../../core/formats/smiles.ts';
 import { SHARED_DATA_ABSENT, sharedData } from '../shared.ts';
+import { randomNumbers, shuffled } from './perturbed.ts';
+import { invertedText, witnessOf } from './witness.ts';
 
 const list = sharedData('chembl-chiral/chembl-20-chiral.smi');
 /** Every so many of the 5,000 structures, to keep the run short. */
@@ -22,40 +24,6 @@ const MOST_CENTRES = 6;
  *   so that the cis compound is meso, as we say; the witness keeps one Kekulé structure, in which the plane is lost.
  */
 const EXPLAINED: ReadonlySet<string> = new Set(['CNp1(NC)n[p@@](NC)(n[p@@](NC)(n1)N2CC2)N3CC3']);
-
-/** Numbers from 0 to 1, the same in every run (mulberry32, public domain). */
-function randomNumbers(seed: number): () => number {
-  let state = seed;
-  return () => {
-    state = (state + 0x6d2b79f5) | 0;
-    let t = Math.imul(state ^ (state >>> 15), 1 | state);
-    t = (t + Math.imul(t ^ (t >>> 7), 61 | t)) ^ t;
-    return ((t ^ (t >>> 14)) >>> 0) / 4294967296;
-  };
-}
-
-/** The SMILES with the centres of a bit set inverted. */
-function inverted(smiles: string, bits: number): string {
-  let at = 0;
-  return smiles.replace(/@@?/g, mark => ((bits >> at++) & 1 ? (mark === '@' ? '@@' : '@') : mark));
-}
-
-type RDKitModule = Awaited<ReturnType<typeof initRDKit>>;
-
-interface Witness {
-  readonly canonical: string;
-  /** Number of atoms labelled R or S. */
-  readonly letters: number;
-}
-
-function witnessOf(rdkit: RDKitModule, smiles: string): Witness | null {
-  const molecule = rdkit.get_mol(smiles);
-  if (!molecule) return null;
-  const canonical = molecule.get_smiles();
-  const tags = JSON.parse(molecule.get_stereo_tags()) as { CIP_atoms: [number, string][] };
-  molecule.delete();
-  return { canonical, letters: tags.CIP_atoms.filter(([, letter]) => /[RS]/.test(letter)).length };
-}
 
 describe('relations', () => {
   it.skipIf(list === null)(`are those the witness implies (skipped when ${SHARED_DATA_ABSENT})`, async () => {
@@ -72,7 +40,7 @@ describe('relations', () => {
       const all = (1 << centres) - 1;
       const choice = random();
       const bits = choice < 0.25 ? 0 : choice < 0.5 ? all : 1 + Math.floor(random() * all);
-      const intended = inverted(found, bits);
+      const intended = invertedText(found, bits);
       const model = witnessOf(rdkit, found);
       const wanted = witnessOf(rdkit, intended);
       if (!model || !wanted) continue;
@@ -80,10 +48,10 @@ describe('relations', () => {
       for (let subset = 0; subset <= all; subset++) {
         let size = 0;
         for (let k = 0; k < centres; k++) size += (subset >> k) & 1;
-        if (size < fewest && witnessOf(rdkit, inverted(intended, subset))?.canonical === model.canonical)
+        if (size < fewest && witnessOf(rdkit, invertedText(intended, subset))?.canonical === model.canonical)
           fewest = size;
       }
-      const mirrored = witnessOf(rdkit, inverted(intended, all))?.canonical === model.canonical;
+      const mirrored = witnessOf(rdkit, invertedText(intended, all))?.canonical === model.canonical;
       const expected =
         fewest === 0
           ? 'same'
@@ -93,11 +61,7 @@ describe('relations', () => {
               ? 'epimer'
               : 'diastereomer';
       const { molecule } = parseSmiles(found);
-      const order = Array.from({ length: molecule.atomCount }, (_, i) => i);
-      for (let i = order.length - 1; i > 0; i--) {
-        const j = Math.floor(random() * (i + 1));
-        [order[i], order[j]] = [order[j]!, order[i]!];
-      }
+      const order = shuffled(molecule.atomCount, random);
       const result = compared(renumbered(molecule, order), intended);
       const wrong = result.units.filter(({ verdict }) => verdict === 'inverted').length;
       counts.set(expected, (counts.get(expected) ?? 0) + 1);
