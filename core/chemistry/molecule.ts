@@ -160,11 +160,12 @@ export type MoleculeArrays = Omit<
   'atomCount' | 'bondCount' | 'neighbourStart' | 'neighbours' | 'neighbourBonds'
 >;
 
-/** Completes a molecule from its arrays: counts and adjacency. @throws RangeError when a bond names an atom that is not there, or joins an atom to itself. */
-export function assembleMolecule(arrays: MoleculeArrays): Molecule {
-  const atomCount = arrays.elements.length;
-  const bondCount = arrays.bondOrders.length;
-  const { bondAtoms } = arrays;
+/** Neighbours of each atom, as a molecule holds them. */
+export type Adjacency = Pick<Molecule, 'neighbourStart' | 'neighbours' | 'neighbourBonds'>;
+
+/** Lists the neighbours of each atom from two atoms a bond. @throws RangeError when a bond names an atom that is not there, or joins an atom to itself. */
+export function adjacencyOf(atomCount: number, bondAtoms: Uint32Array): Adjacency {
+  const bondCount = bondAtoms.length / 2;
   const neighbourStart = new Uint32Array(atomCount + 1);
   for (let b = 0; b < bondCount; b++) {
     const first = bondAtoms[2 * b]!;
@@ -189,7 +190,14 @@ export function assembleMolecule(arrays: MoleculeArrays): Molecule {
     neighbours[at] = first;
     neighbourBonds[at] = b;
   }
-  return { ...arrays, atomCount, bondCount, neighbourStart, neighbours, neighbourBonds };
+  return { neighbourStart, neighbours, neighbourBonds };
+}
+
+/** Completes a molecule from its arrays: counts and adjacency. @throws RangeError as `adjacencyOf`. */
+export function assembleMolecule(arrays: MoleculeArrays): Molecule {
+  const atomCount = arrays.elements.length;
+  const bondCount = arrays.bondOrders.length;
+  return { ...arrays, atomCount, bondCount, ...adjacencyOf(atomCount, arrays.bondAtoms) };
 }
 
 /** Builds a molecule from lists of atoms and bonds. @throws RangeError as `assembleMolecule`. */
@@ -206,16 +214,39 @@ export function buildMolecule(input: MoleculeInput): Molecule {
       coordinates[3 * i + 2] = atom.z ?? (dimension === 2 ? 0 : Number.NaN);
     });
   }
+  const elements = new Uint8Array(n);
+  const charges = new Int8Array(n);
+  const isotopes = new Uint16Array(n);
+  const radicals = new Uint8Array(n);
+  const hydrogens = new Uint8Array(n);
+  for (let i = 0; i < n; i++) {
+    const atom = atoms[i]!;
+    elements[i] = atom.element;
+    charges[i] = atom.charge ?? 0;
+    isotopes[i] = atom.isotope ?? 0;
+    radicals[i] = atom.radical ?? 0;
+    hydrogens[i] = atom.hydrogens ?? 0;
+  }
+  const bondAtoms = new Uint32Array(2 * bonds.length);
+  const bondOrders = new Uint8Array(bonds.length);
+  const bondMarks = new Uint8Array(bonds.length);
+  for (let b = 0; b < bonds.length; b++) {
+    const [first, second, order, mark] = bonds[b]!;
+    bondAtoms[2 * b] = first;
+    bondAtoms[2 * b + 1] = second;
+    bondOrders[b] = order;
+    bondMarks[b] = mark ?? BondMark.none;
+  }
   return assembleMolecule({
     name: input.name ?? '',
-    elements: Uint8Array.from(atoms, atom => atom.element),
-    charges: Int8Array.from(atoms, atom => atom.charge ?? 0),
-    isotopes: Uint16Array.from(atoms, atom => atom.isotope ?? 0),
-    radicals: Uint8Array.from(atoms, atom => atom.radical ?? 0),
-    hydrogens: Uint8Array.from(atoms, atom => atom.hydrogens ?? 0),
-    bondAtoms: Uint32Array.from(bonds.flatMap(([first, second]) => [first, second])),
-    bondOrders: Uint8Array.from(bonds, bond => bond[2]),
-    bondMarks: Uint8Array.from(bonds, bond => bond[3] ?? BondMark.none),
+    elements,
+    charges,
+    isotopes,
+    radicals,
+    hydrogens,
+    bondAtoms,
+    bondOrders,
+    bondMarks,
     coordinates,
     dimension,
     labels: labelled ? atoms.map((atom, i) => atom.label ?? String(i + 1)) : null,

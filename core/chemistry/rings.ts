@@ -4,7 +4,7 @@
  * The ring list holds a shortest ring through every ring bond, each ring once: what perception needs of ring size and
  * membership. It contains every smallest set of smallest rings' sizes but is not meant as a basis.
  */
-import type { Molecule } from './molecule.ts';
+import type { Adjacency, Molecule } from './molecule.ts';
 
 export interface RingInfo {
   /** 1 for atoms and bonds in any ring. */
@@ -96,7 +96,7 @@ function spread(
 }
 
 /** Bonds that are in a ring: those that are not bridges (R. E. Tarjan, Inf. Process. Lett. 1974, 2, 160), without recursion. */
-export function ringBonds(molecule: Molecule): Uint8Array {
+export function ringBonds(molecule: Adjacency & Pick<Molecule, 'atomCount' | 'bondCount'>): Uint8Array {
   const { atomCount, bondCount, neighbourStart, neighbours, neighbourBonds } = molecule;
   const inRing = new Uint8Array(bondCount).fill(1);
   const order = new Int32Array(atomCount);

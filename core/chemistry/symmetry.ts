@@ -24,39 +24,43 @@ function mix(hash: number, value: number): number {
 export function symmetryClasses(molecule: Molecule): Int32Array {
   const { atomCount, neighbourStart, neighbours, elements, isotopes } = molecule;
   let colours = new Int32Array(atomCount);
+  let next = new Int32Array(atomCount);
+  const sorted = new Int32Array(atomCount);
+  const acid = new Uint8Array(atomCount);
   for (let i = 0; i < atomCount; i++) {
     let colour = mix(mix(7, elements[i]!), isotopes[i]!);
-    if (!isAcidTerminal(molecule, i)) {
+    acid[i] = isAcidTerminal(molecule, i) ? 1 : 0;
+    if (acid[i] === 0) {
       colour = mix(colour, allHydrogens(molecule, i));
       colour = mix(colour, electronKey(molecule, i));
     } else colour = mix(colour, 0x777);
     colours[i] = colour;
   }
-  let classes = countDistinct(colours);
+  let classes = countDistinct(colours, sorted);
   for (let round = 0; round < MOST_ROUNDS; round++) {
-    const next = new Int32Array(atomCount);
     for (let i = 0; i < atomCount; i++) {
       // The sum of well-mixed hashes is independent of the order of the neighbours.
       let sum = 0;
-      const acid = isAcidTerminal(molecule, i);
       for (let k = neighbourStart[i]!; k < neighbourStart[i + 1]!; k++) {
         const neighbour = neighbours[k]!;
         // A proton that either oxygen of an acid group can bear tells them apart no more.
-        if (acid && elements[neighbour] === 1) continue;
+        if (acid[i] === 1 && elements[neighbour] === 1) continue;
         sum = (sum + mix(0x51ed, colours[neighbour]!)) | 0;
       }
       next[i] = mix(colours[i]!, sum);
     }
-    const count = countDistinct(next);
+    const count = countDistinct(next, sorted);
     if (count <= classes) break;
     classes = count;
-    colours = next;
+    [colours, next] = [next, colours];
   }
   return colours;
 }
 
-function countDistinct(values: Int32Array): number {
-  const sorted = values.slice().sort();
+/** Number of different values; `sorted` is a scratch array of the same length. */
+function countDistinct(values: Int32Array, sorted: Int32Array): number {
+  sorted.set(values);
+  sorted.sort();
   let count = sorted.length > 0 ? 1 : 0;
   for (let i = 1; i < sorted.length; i++) if (sorted[i] !== sorted[i - 1]) count++;
   return count;

@@ -9,7 +9,8 @@
 import type { Digraph } from './digraph.ts';
 import type { NodeRule } from './rule.ts';
 
-const FIRST_CAPACITY = 1024;
+/** Nodes the arrays hold at first: most centres need a dozen or two. */
+const FIRST_CAPACITY = 128;
 
 /** The number compared where a set is shorter than the other: a phantom atom. */
 const PHANTOM = 0;

@@ -25,7 +25,8 @@ export class DigraphLimitError extends Error {
   }
 }
 
-const FIRST_CAPACITY = 1024;
+/** Nodes the arrays hold at first: most centres need a dozen or two. */
+const FIRST_CAPACITY = 128;
 
 export class Digraph {
   readonly molecule: Molecule;

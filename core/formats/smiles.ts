@@ -7,6 +7,7 @@
 import { elementNumber, elementSymbol } from '../chemistry/elements.ts';
 import { perfectMatching } from '../chemistry/kekule.ts';
 import {
+  adjacencyOf,
   type AtomInput,
   type BondOrder,
   buildMolecule,
@@ -279,11 +280,12 @@ function settleOrders(reader: Reader): void {
     bond.order = both && bond.direction === 0 ? AROMATIC_BOND : 1;
   }
   const fixed = new Float64Array(atoms.length);
-  const rings = ringMembership(atoms.length, bonds);
+  // Only bonds between two aromatic atoms need to be known to lie in a ring.
+  const rings = bonds.some(bond => bond.order === AROMATIC_BOND) ? ringMembership(atoms.length, bonds) : null;
   const edges: [number, number][] = [];
   bonds.forEach((bond, b) => {
     // An unwritten bond between two aromatic rings (biphenyl) is single.
-    if (bond.order === AROMATIC_BOND && rings[b] === 0) bond.order = 1;
+    if (bond.order === AROMATIC_BOND && rings?.[b] === 0) bond.order = 1;
     const order = bond.order === AROMATIC_BOND ? 1 : bond.order === ANY_BOND ? 0 : bond.order;
     fixed[bond.first]! += order;
     fixed[bond.second]! += order;
@@ -336,11 +338,12 @@ function needsDoubleBond(atom: SmilesAtom, sum: number): boolean {
 
 /** 1 for bonds in rings: a bond is in one unless removing it parts its ends. */
 function ringMembership(atomCount: number, bonds: readonly SmilesBond[]): Uint8Array {
-  const plain = buildMolecule({
-    atoms: Array.from({ length: atomCount }, () => ({ element: 6 })),
-    bonds: bonds.map(bond => [bond.first, bond.second, 1] as const),
-  });
-  return ringBonds(plain);
+  const bondAtoms = new Uint32Array(2 * bonds.length);
+  for (let b = 0; b < bonds.length; b++) {
+    bondAtoms[2 * b] = bonds[b]!.first;
+    bondAtoms[2 * b + 1] = bonds[b]!.second;
+  }
+  return ringBonds({ atomCount, bondCount: bonds.length, ...adjacencyOf(atomCount, bondAtoms) });
 }
 
 /** Stated configuration of centres, allenes and double bonds. */
