@@ -3,9 +3,10 @@
  * on the ranking, and the ranking on what the ligands carry.
  */
 import { elementSymbol } from '../chemistry/elements.ts';
-import { assembleMolecule, atomLabel, type Molecule } from '../chemistry/molecule.ts';
+import { atomLabel, type Molecule } from '../chemistry/molecule.ts';
 import type { Descriptor, Docket, Settings } from '../docket.ts';
 import { Labeller } from './label.ts';
+import { withAtom } from './trial-molecule.ts';
 
 /** One change: on `atom`, what stands there now and what would. */
 export interface LetterChange {
@@ -112,34 +113,7 @@ function withHydrogenReplaced(
     return { ...molecule, elements, hydrogens: counts };
   }
   if (molecule.hydrogens[atom] === 0) return null;
-  const counts = append(molecule.hydrogens, hydrogens);
+  const counts = molecule.hydrogens.slice();
   counts[atom]!--;
-  const bondAtoms = new Uint32Array(molecule.bondAtoms.length + 2);
-  bondAtoms.set(molecule.bondAtoms);
-  bondAtoms.set([atom, molecule.atomCount], molecule.bondAtoms.length);
-  return assembleMolecule({
-    ...molecule,
-    elements: append(molecule.elements, element),
-    charges: Int8Array.of(...molecule.charges, 0),
-    isotopes: Uint16Array.of(...molecule.isotopes, 0),
-    radicals: append(molecule.radicals, 0),
-    hydrogens: counts,
-    bondAtoms,
-    bondOrders: append(molecule.bondOrders, 1),
-    bondMarks: append(molecule.bondMarks, 0),
-    coordinates: null,
-    dimension: 0,
-    labels: null,
-    occupancies: null,
-    doubtfulBonding: null,
-    residues: null,
-    uncertainty: null,
-  });
-}
-
-function append(array: Uint8Array, value: number): Uint8Array {
-  const longer = new Uint8Array(array.length + 1);
-  longer.set(array);
-  longer[array.length] = value;
-  return longer;
+  return withAtom({ ...molecule, hydrogens: counts }, element, hydrogens, [atom]);
 }

@@ -2,13 +2,16 @@
  * The descriptor of a chirality plane: which pilot atom, and which neighbour in the ring, have the higher priority
  * (IUPAC 1996, Basic Terminology of Stereochemistry: planar chirality; Rp is P, Sp is M).
  */
-import { assembleMolecule, bondBetween, type Molecule } from '../chemistry/molecule.ts';
+import { bondBetween, type Molecule } from '../chemistry/molecule.ts';
 import type { Descriptor, LabelledUnit, RankedLigand, Settings } from '../docket.ts';
 import type { StereoUnit } from '../perception/unit.ts';
 import { Branches } from './branches.ts';
 import { Digraph } from './digraph.ts';
 import { isComplete, type Ranking, rankByConstitution } from './ranking.ts';
 import { rankingGraph } from './ranking-graph.ts';
+import { withAtom } from './trial-molecule.ts';
+
+const PHANTOM = 0;
 
 /** A bridge that leaves the ring by C=C: which atoms the plane holds, and so which is the pilot, is not laid down; the published suite (VS155) names its double bonds alone. */
 const NO_LETTER =
@@ -18,12 +21,9 @@ const NO_LETTER =
 export function labelPlane(molecule: Molecule, unit: StereoUnit, settings: Settings): LabelledUnit | null {
   const [first, second] = unit.ends;
   if (first === undefined || second === undefined) return null;
-  const pilots = rankOn(
-    withCommonNeighbour(molecule, [first.ligands[3]!, second.ligands[3]!]),
-    molecule.atomCount,
-    [first.ligands[3]!, second.ligands[3]!],
-    settings,
-  );
+  const pilotAtoms = [first.ligands[3]!, second.ligands[3]!];
+  // A phantom bound to both lets their branches be compared.
+  const pilots = rankOn(withAtom(molecule, PHANTOM, 0, pilotAtoms), molecule.atomCount, pilotAtoms, settings);
   // Pilot atoms that are alike are exchanged by a twofold axis: either gives the same descriptor.
   const end = pilots.order[0]!;
   const chosen = end === 0 ? first : second;
@@ -61,36 +61,4 @@ function rankOn(molecule: Molecule, root: number, ligands: readonly number[], se
   digraph.expand(0);
   const nodes = ligands.map(ligand => digraph.ligandNode(0, ligand));
   return rankByConstitution(new Branches(digraph), 0, nodes);
-}
-
-/** The molecule with a phantom (atomic number 0) bound to two atoms, from which their branches can be compared. */
-function withCommonNeighbour(molecule: Molecule, atoms: readonly [number, number]): Molecule {
-  const grown = <T extends Uint8Array | Int8Array | Uint16Array>(old: T, fresh: T): T => {
-    fresh.set(old);
-    return fresh;
-  };
-  const n = molecule.atomCount;
-  const bondAtoms = new Uint32Array(molecule.bondAtoms.length + 4);
-  bondAtoms.set(molecule.bondAtoms);
-  bondAtoms.set([n, atoms[0], n, atoms[1]], molecule.bondAtoms.length);
-  const bondOrders = new Uint8Array(molecule.bondCount + 2).fill(1);
-  bondOrders.set(molecule.bondOrders);
-  return assembleMolecule({
-    ...molecule,
-    elements: grown(molecule.elements, new Uint8Array(n + 1)),
-    charges: grown(molecule.charges, new Int8Array(n + 1)),
-    isotopes: grown(molecule.isotopes, new Uint16Array(n + 1)),
-    radicals: grown(molecule.radicals, new Uint8Array(n + 1)),
-    hydrogens: grown(molecule.hydrogens, new Uint8Array(n + 1)),
-    bondAtoms,
-    bondOrders,
-    bondMarks: new Uint8Array(molecule.bondCount + 2),
-    coordinates: null,
-    dimension: 0,
-    labels: null,
-    occupancies: null,
-    doubtfulBonding: null,
-    residues: null,
-    uncertainty: null,
-  });
 }

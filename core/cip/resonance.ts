@@ -50,9 +50,5 @@ function bearsCharge(z: number): boolean {
 
 /** An end that carries nothing: exchanging two such ends of one element changes no set. */
 function isBare(molecule: Molecule, atom: number): boolean {
-  return (
-    degree(molecule, atom) === 1 &&
-    molecule.hydrogens[atom] === 0 &&
-    molecule.isotopes[atom] === 0
-  );
+  return degree(molecule, atom) === 1 && molecule.hydrogens[atom] === 0 && molecule.isotopes[atom] === 0;
 }
