@@ -10,6 +10,7 @@ import { examine } from '../../core/examine.ts';
 import { smilesOf } from '../../core/formats/smiles-writer.ts';
 import { parseSmiles } from '../../core/formats/smiles.ts';
 import { ringInfo } from '../../core/chemistry/rings.ts';
+import type { StereoUnit } from '../../core/perception/unit.ts';
 import { type RDKit, rdkitModule, witnessLabels } from '../rdkit.ts';
 import { SHARED_DATA_ABSENT, sharedData } from '../shared.ts';
 
@@ -20,6 +21,9 @@ function keyOf({ unit }: LabelledUnit): string | null {
   if (unit.kind !== 'double-bond') return null;
   return `${Math.min(...unit.atoms)}-${Math.max(...unit.atoms)}`;
 }
+
+/** Most open units that are tried in every combination. */
+const MOST_OPEN = 6;
 
 interface Difference {
   readonly smiles: string;
@@ -52,13 +56,13 @@ function isSulfilimine({ molecule, key }: Difference): boolean {
   return elements.includes(16) && elements.includes(7);
 }
 
-/** The units of a docket that nothing decides and that are not labile. */
-const openUnits = (docket: Docket): LabelledUnit[] =>
-  docket.units.filter(({ unit }) => unit.sense === 0 && unit.labile === null);
+/** What perception took for a possible unit, that nothing decides and that is not labile. */
+const openUnits = (docket: Docket): StereoUnit[] =>
+  docket.candidates.filter(unit => unit.sense === 0 && unit.labile === null);
 
 /** Statements that decide the open units; bit k of `bits` chooses the hand of the k-th. */
-function decided(units: readonly LabelledUnit[], bits: number): StatedStereo[] {
-  return units.flatMap(({ unit }, k): StatedStereo[] => {
+function decided(units: readonly StereoUnit[], bits: number): StatedStereo[] {
+  return units.flatMap((unit, k): StatedStereo[] => {
     const bit = ((bits >> k) & 1) === 1;
     const [first, second] = unit.ends.map(end => end.ligands);
     if (unit.kind === 'centre') {
@@ -89,7 +93,7 @@ function dependsOnOpenUnit(rdkit: RDKit, difference: Difference): boolean {
   const open = openUnits(docket);
   if (difference.ours !== null || open.length === 0) return false;
   const letters = new Set<string>();
-  for (let bits = 0; bits < 2 ** Math.min(open.length, 4); bits++) {
+  for (let bits = 0; bits < 2 ** Math.min(open.length, MOST_OPEN); bits++) {
     const complete: Molecule = { ...molecule, stated: [...molecule.stated, ...decided(open, bits)] };
     const ours = examine(complete).units.find(unit => keyOf(unit) === key)?.descriptor;
     const { smiles, order } = smilesOf(complete);
