@@ -9,7 +9,7 @@ import type { StereoUnit, UnitEnd } from '../perception/unit.ts';
 import { type AuxiliaryDescriptor, centreLetter, labelAuxiliary, pairLetter } from './auxiliary.ts';
 import { Branches } from './branches.ts';
 import { Digraph, DigraphLimitError } from './digraph.ts';
-import { Letter, descriptorOf } from './letter.ts';
+import { descriptorOf, isReflectionInvariant, Letter } from './letter.ts';
 import { labelPlane } from './plane.ts';
 import {
   NO_NODE,
@@ -197,6 +197,9 @@ export class Labeller {
       });
       if (!rankings.every(isComplete)) return null;
       const letter = letterOf(unit, unit.sense === 0 ? 1 : unit.sense, rankings);
+      // A letter that reflection leaves as it is would mean that the ligands left tied are exchanged by symmetry, as the three
+      // at a bridgehead of adamantane: no stereogenic unit.
+      if (isReflectionInvariant(letter)) return null;
       if (result !== null && result.letter !== letter) return null;
       result ??= { rankings, letter };
     }

@@ -57,3 +57,8 @@ export function side(letter: number): 1 | -1 | 0 {
       return 0;
   }
 }
+
+/** Whether a letter of a chiral kind of unit stays the same on reflection: r, s, m, p. */
+export function isReflectionInvariant(letter: number): boolean {
+  return letter === Letter.r || letter === Letter.s || letter === Letter.m || letter === Letter.p;
+}
