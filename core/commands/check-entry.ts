@@ -4,6 +4,7 @@ import { identityOf } from '../comparison/consistency.ts';
 import { distortionOf } from '../comparison/distortion.ts';
 import type { Intentions } from '../comparison/intentions.ts';
 import type { Molecule } from '../chemistry/molecule.ts';
+import { alternativeDifferences } from '../crystal/alternatives.ts';
 import type { Docket, Settings } from '../docket.ts';
 import { examine } from '../examine.ts';
 import type { Entry, Format, Limits, RawEntry } from '../formats/format.ts';
@@ -111,6 +112,9 @@ function checkMolecule(
     configuration: identity?.configuration ?? null,
     places: identity?.places ?? null,
     enantiopure: options.enantiopure ?? false,
+    alternatives: alternativeDifferences(examined.molecule, examined.docket, entry.alternatives ?? [], each =>
+      examineLigands(each, options),
+    ),
     distorted: examined.docket.units.map(unit => distortionOf(examined.molecule, unit)),
   });
   figures?.push(...figuresOf(record, examined.molecule, examined.docket.units));

@@ -130,7 +130,8 @@ export function readComponent(block: CifBlock, limits: Limits): Component {
   });
   const elements = ids.map((id, i) => {
     const symbol = upper(types[i] ?? '');
-    const z = elementNumber(symbol);
+    // X stands for an atom that may be one or another (ASX, GLX).
+    const z = symbol === 'X' ? 0 : elementNumber(symbol);
     if (z === undefined)
       throw new EntryProblem('unknown-element', `${symbol} of atom ${id ?? '?'} is no element`, line);
     return z;

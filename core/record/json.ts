@@ -1,7 +1,9 @@
 /** The record of one checked entry as `check --json` prints it, one object a line; the contract of the command line. */
 import { elementSymbol } from '../chemistry/elements.ts';
 import { atomLabel, IMPLICIT_HYDROGEN, LONE_PAIR, type Molecule } from '../chemistry/molecule.ts';
+import { checkResidues, type FindingKind } from '../biopolymer/checks.ts';
 import { type CrystalRecord, crystalRecord } from '../crystal/record.ts';
+import type { AlternativeDifference } from '../crystal/alternatives.ts';
 import type { EntryComparison, UnitVerdict } from '../comparison/compare.ts';
 import type { Descriptor, Docket, LabelledUnit, Relation, RuleName, Verdict } from '../docket.ts';
 import type { Entry } from '../formats/format.ts';
@@ -61,6 +63,18 @@ export interface MoleculeRecord {
   readonly relation: Relation | null;
 }
 
+export interface ResidueFindingRecord {
+  readonly kind: FindingKind;
+  readonly residue: string;
+  /** 1-based. */
+  readonly atom: number;
+  readonly label: string;
+  /** Å³. */
+  readonly signedVolume: number | null;
+  readonly ideal: number | null;
+  readonly message: string;
+}
+
 export interface ErrorRecord {
   readonly code: string;
   readonly message: string;
@@ -91,6 +105,10 @@ export interface EntryRecord {
   readonly configuration?: string;
   /** Of an entry from a crystal structure. */
   readonly crystal?: CrystalRecord;
+  /** Of a macromolecular model: where residues differ from what their names say. */
+  readonly residueFindings?: readonly ResidueFindingRecord[];
+  /** Units whose handedness differs in an alternative of a disordered part. */
+  readonly alternatives?: readonly AlternativeDifference[];
   readonly warnings: readonly string[];
   readonly error: ErrorRecord | null;
 }
@@ -113,6 +131,7 @@ export interface EntrySource {
   readonly distorted: readonly (number | null)[];
   /** Whether the user states that the sample of a crystal is enantiopure. */
   readonly enantiopure?: boolean;
+  readonly alternatives?: readonly AlternativeDifference[];
 }
 
 function round(value: number | null, digits: number): number | null {
@@ -137,6 +156,7 @@ export function entryRecord(source: EntrySource): EntryRecord {
     else verdicts.set(verdict.unit, verdict);
   }
   const crystal = entry.crystal ? crystalRecord(entry.crystal, source.enantiopure ?? false) : null;
+  const findings = residueFindings(molecule);
   const several = docket.molecules.length > 1;
   const moleculeOf = several ? ownerTable(molecule.atomCount, docket) : null;
   const units = docket.units.map((labelled, u) =>
@@ -165,9 +185,32 @@ export function entryRecord(source: EntrySource): EntryRecord {
     ...(source.compound !== null && { compound: source.compound }),
     ...(source.configuration !== null && { configuration: source.configuration }),
     ...(crystal && { crystal }),
-    warnings: [...new Set([...entry.warnings, ...docket.warnings, ...(comparison?.warnings ?? [])])],
+    ...(findings.length > 0 && { residueFindings: findings }),
+    ...(source.alternatives && source.alternatives.length > 0 && { alternatives: source.alternatives }),
+    warnings: [
+      ...new Set([
+        ...entry.warnings,
+        ...docket.warnings,
+        ...(comparison?.warnings ?? []),
+        ...findings.map(({ message }) => message),
+        ...(source.alternatives ?? []).map(({ message }) => message),
+      ]),
+    ],
     error: source.error,
   };
+}
+
+function residueFindings(molecule: Molecule): ResidueFindingRecord[] {
+  if (!molecule.residues) return [];
+  return checkResidues(molecule).findings.map(({ kind, residue, atom, index, volume, ideal, message }) => ({
+    kind,
+    residue,
+    atom: index + 1,
+    label: atom,
+    signedVolume: round(volume, VOLUME_DIGITS),
+    ideal: round(ideal, VOLUME_DIGITS),
+    message,
+  }));
 }
 
 /** Record of an entry that could not be read. */
