@@ -11,6 +11,17 @@ export type Side = 'sight' | 'far' | 'free';
 /** The name of a unit: the labels of its atoms. */
 export function unitName(molecule: Molecule, labelled: LabelledUnit): string {
   const joint = labelled.unit.kind === 'centre' ? ' ' : '=';
+  const residue = residueName(molecule, labelled.unit.atoms[0] ?? -1);
+  return `${residue === '' ? '' : `${residue} `}${atomNames(molecule, labelled, joint)}`;
+}
+
+/** "A/ALA/123", empty outside macromolecules. */
+export function residueName(molecule: Molecule, atom: number): string {
+  const residue = molecule.residues?.[atom];
+  return residue ? `${residue.chain}/${residue.residue}/${residue.number}` : '';
+}
+
+function atomNames(molecule: Molecule, labelled: LabelledUnit, joint: string): string {
   return labelled.unit.atoms.map(atom => atomLabel(molecule, atom, elementSymbol)).join(joint);
 }
 

@@ -26,13 +26,17 @@ function start(): Worker {
 }
 
 /** Lays a molecule out in the plane. */
-export function layOut(molecule: Molecule, units: readonly LabelledUnit[]): Promise<LayoutAnswer> {
+export function layOut(
+  molecule: Molecule,
+  units: readonly LabelledUnit[],
+  focus: readonly number[],
+): Promise<LayoutAnswer> {
   worker ??= start();
   const sender = worker;
   return new Promise(resolve => {
     const request = ++last;
     waiting.set(request, resolve);
-    const message: LayoutRequest = { request, molecule, units };
+    const message: LayoutRequest = { request, molecule, units, focus: [...focus] };
     sender.postMessage(message, { transfer: [] });
   });
 }

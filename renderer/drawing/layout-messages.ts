@@ -10,6 +10,8 @@ export const layoutRequest = z.strictObject({
   molecule: z.custom<Molecule>(
     value => typeof value === 'object' && value !== null && 'bondAtoms' in value && 'neighbourStart' in value,
   ),
+  /** Atoms around which a large molecule is drawn. */
+  focus: z.array(count),
   units: z.custom<readonly LabelledUnit[]>(value => Array.isArray(value)),
 });
 export type LayoutRequest = z.infer<typeof layoutRequest>;

@@ -25,9 +25,9 @@ interface CommonChemistry {
 }
 
 async function layOut(request: ReturnType<typeof layoutRequest.parse>): Promise<Float64Array | null> {
-  const { molecule, units } = request;
+  const { molecule, units, focus } = request;
   const layout = new Float64Array(2 * molecule.atomCount).fill(Number.NaN);
-  const skeleton = skeletonOf(molecule, units);
+  const skeleton = skeletonOf(molecule, units, focus);
   if (skeleton.atoms.length === 0 || skeleton.atoms.length > MOST_ATOMS) return null;
   if (molecule.dimension === 2 && molecule.coordinates) {
     for (const atom of skeleton.atoms) {

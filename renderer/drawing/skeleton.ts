@@ -26,12 +26,47 @@ function isLeftOut(molecule: Molecule, atom: number): boolean {
   );
 }
 
+/** Atoms up to which a molecule is drawn whole, hydrogens included. */
+const WHOLE = 400;
+/** Bonds from the unit within which the rest of a larger one is drawn. */
+const REACH = 5;
+
+/** The atoms near a unit of a molecule that is too large to be drawn whole; null for one that is not. */
+function surroundings(molecule: Molecule, focus: readonly number[]): ReadonlySet<number> | null {
+  if (molecule.atomCount <= WHOLE || focus.length === 0) return null;
+  const near = new Set(focus);
+  let edge = [...focus];
+  for (let step = 0; step < REACH; step++) {
+    const next: number[] = [];
+    for (const atom of edge) {
+      for (let k = molecule.neighbourStart[atom]!; k < molecule.neighbourStart[atom + 1]!; k++) {
+        const neighbour = molecule.neighbours[k]!;
+        if (near.has(neighbour)) continue;
+        near.add(neighbour);
+        next.push(neighbour);
+      }
+    }
+    edge = next;
+  }
+  return near;
+}
+
+/** The atoms on which a drawing that cannot show the whole molecule is centred; none where it can. */
+export function focusOf(molecule: Molecule, labelled: LabelledUnit | undefined): readonly number[] {
+  return molecule.atomCount <= WHOLE ? [] : (labelled?.unit.atoms ?? [0]);
+}
+
 /** Leaves the plain hydrogens out and states the double bonds of the docket, so that a layout keeps their sides. */
-export function skeletonOf(molecule: Molecule, units: readonly LabelledUnit[]): Skeleton {
+export function skeletonOf(
+  molecule: Molecule,
+  units: readonly LabelledUnit[],
+  focus: readonly number[] = [],
+): Skeleton {
+  const near = surroundings(molecule, focus);
   const place = new Int32Array(molecule.atomCount).fill(-1);
   const atoms: number[] = [];
   for (let i = 0; i < molecule.atomCount; i++) {
-    if (isLeftOut(molecule, i)) continue;
+    if (isLeftOut(molecule, i) || (near && !near.has(i))) continue;
     place[i] = atoms.length;
     atoms.push(i);
   }
@@ -46,8 +81,8 @@ export function skeletonOf(molecule: Molecule, units: readonly LabelledUnit[]): 
     if (a >= 0 && c >= 0) {
       bondAtoms.push(a, c);
       orders.push(molecule.bondOrders[b]!);
-    } else if (a >= 0) hydrogens[a]!++;
-    else if (c >= 0) hydrogens[c]!++;
+    } else if (a >= 0 && isLeftOut(molecule, j)) hydrogens[a]!++;
+    else if (c >= 0 && isLeftOut(molecule, i)) hydrogens[c]!++;
   }
   const stated: StatedStereo[] = [];
   for (const { unit } of units) {

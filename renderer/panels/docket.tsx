@@ -1,4 +1,5 @@
 /** The docket: every stereogenic unit of the model with glyph, letter, atoms and verdict; and the judgement of the chosen one. */
+import { useVirtualizer } from '@tanstack/react-virtual';
 import { type KeyboardEvent, type ReactElement, useEffect, useRef } from 'react';
 import { unitName } from '../caption.ts';
 import type { CommandId } from '../commands.ts';
@@ -8,6 +9,9 @@ import { type Mark, judgementOf, unitKey } from '../store.ts';
 import { measure, TEXT } from '../text.ts';
 import { useAppState, useController } from '../use-store.ts';
 
+/** Height of a row, px. */
+const ROW_HEIGHT = 31;
+
 export function DocketPanel(): ReactElement {
   const controller = useController();
   const state = useAppState('model', 'unit', 'files', 'present');
@@ -15,9 +19,17 @@ export function DocketPanel(): ReactElement {
   const list = useRef<HTMLUListElement>(null);
   const units = model?.docket?.units ?? [];
 
+  const virtual = useVirtualizer({
+    count: units.length,
+    getScrollElement: () => list.current,
+    estimateSize: () => ROW_HEIGHT,
+    overscan: 10,
+  });
+
   useEffect(() => {
-    list.current?.querySelector('[aria-selected="true"]')?.scrollIntoView({ block: 'nearest' });
-  }, [unit, model]);
+    virtual.scrollToIndex(unit, { align: 'auto' });
+    // Only the choice moves the list.
+  }, [unit, model]); // oxlint-disable-line
 
   const onKey = (event: KeyboardEvent): void => {
     const steps: Record<string, number> = {
@@ -55,8 +67,12 @@ export function DocketPanel(): ReactElement {
           tabIndex={0}
           onKeyDown={onKey}
           className="units"
+          style={{ height: units.length * ROW_HEIGHT }}
         >
-          {units.map((labelled, u) => {
+          <li role="presentation" style={{ height: virtual.getTotalSize() }} />
+          {virtual.getVirtualItems().map(({ index: u, start }) => {
+            const labelled = units[u];
+            if (!labelled) return null;
             const shown = model?.verdicts[u];
             const verdict = shown?.verdict ?? null;
             const judgement = model ? judgementOf(state, unitKey(model, u, state.files)) : null;
@@ -67,7 +83,10 @@ export function DocketPanel(): ReactElement {
                 id={`unit-${u}`}
                 role="option"
                 aria-selected={u === unit}
+                aria-setsize={units.length}
+                aria-posinset={u + 1}
                 className={`unit${doubtful ? ' doubtful' : ''}`}
+                style={{ transform: `translateY(${start}px)` }}
                 onClick={() => controller.selectUnit(u)}
               >
                 <Glyph

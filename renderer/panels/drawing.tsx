@@ -5,7 +5,7 @@ import { BondMark, type Molecule } from '../../core/chemistry/molecule.ts';
 import type { LabelledUnit } from '../../core/docket.ts';
 import { unitName } from '../caption.ts';
 import { layOut } from '../drawing/layout-client.ts';
-import { type Layout, skeletonOf, wedgesFor } from '../drawing/skeleton.ts';
+import { focusOf, type Layout, skeletonOf, wedgesFor } from '../drawing/skeleton.ts';
 import { senseClass } from '../sight/dial-drawing.ts';
 import { unitAtoms } from '../sight/model-geometry.ts';
 import { TEXT } from '../text.ts';
@@ -17,6 +17,7 @@ const MARGIN = 24;
 
 interface Made {
   readonly molecule: Molecule;
+  readonly focus: readonly number[];
   readonly layout: Layout | null;
 }
 
@@ -25,24 +26,29 @@ export function DrawingPanel(): ReactElement | null {
   const molecule = model?.molecule ?? null;
   const units = model?.docket?.units;
   const [made, setMade] = useState<Made | null>(null);
+  const whole = useMemo<readonly number[]>(() => [], []);
+  const found = molecule ? focusOf(molecule, units?.[unit]) : whole;
+  const focus = found.length === 0 ? whole : found;
   useEffect(() => {
     if (!molecule || !units) return undefined;
     let current = true;
-    layOut(molecule, units).then(
+    layOut(molecule, units, focus).then(
       ({ layout }) => {
-        if (current) setMade({ molecule, layout });
+        if (current) setMade({ molecule, focus, layout });
       },
       () => undefined,
     );
     return () => {
       current = false;
     };
-  }, [molecule, units]);
+  }, [molecule, units, focus]);
   if (!molecule || !units) return null;
-  const ready = made?.molecule === molecule ? made : null;
+  const ready = made?.molecule === molecule && made.focus === focus ? made : null;
   return (
     <section className="drawing" aria-label={TEXT.drawing}>
-      {ready?.layout && <Drawing molecule={molecule} units={units} layout={ready.layout} unit={unit} />}
+      {ready?.layout && (
+        <Drawing molecule={molecule} units={units} layout={ready.layout} unit={unit} focus={focus} />
+      )}
       {ready && !ready.layout && <p className="fine">{TEXT.noDrawing}</p>}
     </section>
   );
@@ -53,17 +59,19 @@ function Drawing({
   units,
   layout,
   unit,
+  focus,
 }: {
   readonly molecule: Molecule;
   readonly units: readonly LabelledUnit[];
   readonly layout: Layout;
   readonly unit: number;
+  readonly focus: readonly number[];
 }): ReactElement {
   const controller = useController();
   const { lit } = useAppState('lit');
   const scaled = useMemo(() => scale(molecule, layout), [molecule, layout]);
   const wedges = useMemo(() => wedgesFor(molecule, units, layout), [molecule, units, layout]);
-  const skeleton = useMemo(() => skeletonOf(molecule, units), [molecule, units]);
+  const skeleton = useMemo(() => skeletonOf(molecule, units, focus), [molecule, units, focus]);
   const { points, width, height } = scaled;
   const chosen = units[unit];
   const own = chosen ? unitAtoms(molecule, chosen) : new Map<number, string>();
@@ -112,7 +120,7 @@ function Drawing({
       })}
       {units.map(({ descriptor, unit: each }, u) => {
         const [a, b] = each.atoms.map(atom => points.get(atom));
-        if (!a || descriptor === null) return null;
+        if (!a || descriptor === null || (focus.length > 0 && u !== unit)) return null;
         const [dx, dy] = b ? [0, 0] : free(molecule, each.atoms[0]!, points);
         const x = b ? (a[0] + b[0]) / 2 + 10 : a[0] + 15 * dx;
         const y = b ? (a[1] + b[1]) / 2 - 10 : a[1] + 15 * dy;

@@ -16,6 +16,8 @@ import { LEDGER_COLUMNS, type LedgerColumn, ledgerRows } from './ledger-order.ts
 
 const ROW_HEIGHT = 28;
 const URGENCY = Object.fromEntries(FINDINGS.map((finding, k) => [finding, k])) as Record<Finding, number>;
+/** Letters of an entry that are written out. */
+const MOST_LETTERS = 60;
 /** How often strip and table follow a running batch, ms. */
 const FOLLOW = 250;
 /** Tallest line of the strip, px. */
@@ -257,7 +259,7 @@ function LedgerRow({
       <span role="gridcell">{row.name}</span>
       <span role="gridcell">{row.formula}</span>
       <span role="gridcell" className="letters">
-        {Array.from(row.letters, one => one).map((letter, k) => (
+        {Array.from(row.letters.slice(0, MOST_LETTERS), one => one).map((letter, k) => (
           <span key={k} className={`cell-${row.verdicts[k] ?? '-'}`}>
             {letter}
           </span>

@@ -170,6 +170,13 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
                 {text}.
               </span>
             ))}
+            {model?.crystal && (
+              <span className="crystal">
+                {model.crystal.spaceGroup ? <b>{model.crystal.spaceGroup}</b> : null} {TEXT.absoluteStructure}{' '}
+                <b>{model.crystal.absoluteStructure.replace('-', ' ')}</b>: {model.crystal.reason}.{' '}
+                {model.crystal.standing}
+              </span>
+            )}
             {model?.difference ? <span className="warning"> {model.difference}.</span> : null}
             {labelled && model && (model.distorted[unit] ?? null) !== null ? (
               <span className="warning">

@@ -42,6 +42,7 @@ const SHARED = /* glsl */ `
   uniform vec2 depthRange;
   uniform float line;
   uniform float halo;
+  uniform float front;
 `;
 
 const TONE = /* glsl */ `
@@ -51,7 +52,7 @@ const TONE = /* glsl */ `
   }
   vec3 tone(vec3 colour, float strength, float depth) {
     float far = smoothstep(depthRange.x, depthRange.y, depth);
-    return mix(paper, colour, strength * (1.0 - 0.55 * far));
+    return mix(paper, colour, strength * (1.0 - 0.8 * far));
   }
 `;
 
@@ -100,6 +101,7 @@ const BALL_FRAGMENT = /* glsl */ `
       hit = ray * (along + 0.9);
       fragment = vec4(paper, 1.0);
     }
+    if (vLook.a < 0.9 && -hit.z < front) discard;
     gl_FragDepth = depthOf(hit);
   }
 `;
@@ -164,6 +166,7 @@ const ROD_FRAGMENT = /* glsl */ `
     float height = dot(hit - vStart, vAxis);
     if (height < 0.0 || height > vSize.y) discard;
     if (off > vSize.x) hit += ray * 0.9;
+    if (vLook.a < 0.9 && -hit.z < front) discard;
     gl_FragDepth = depthOf(hit);
   }
 `;
@@ -181,6 +184,8 @@ export class InkUniforms {
     depthRange: { value: new Vector2(20, 40) },
     line: { value: LINE },
     halo: { value: HALO },
+    /** What recedes is left out nearer to the reader than this, so that nothing hides the unit. */
+    front: { value: 0 },
   };
 
   setColours({ paper, ink }: InkColours): void {

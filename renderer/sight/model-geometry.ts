@@ -66,6 +66,8 @@ export function modelGeometry(
   const r = molecule.coordinates;
   if (r === null) return { balls: [], rods: [] };
   const own = labelled ? unitAtoms(molecule, labelled) : new Map<number, 'own' | 'ligand'>();
+  // Without a unit in view nothing has to recede.
+  const rest = labelled ? REST_STRENGTH : 1;
   const balls: Ball[] = [];
   const rods: Rod[] = [];
   const shown = (atom: number): boolean =>
@@ -79,7 +81,7 @@ export function modelGeometry(
     if (part === 'own') radius = UNIT_RADIUS;
     else if (part === 'ligand') radius = hydrogen ? HYDROGEN_RADIUS : LIGAND_RADIUS;
     if (look.lit === i) radius += 0.1;
-    const strength = part !== undefined || look.lit === i ? 1 : REST_STRENGTH;
+    const strength = part !== undefined || look.lit === i ? 1 : rest;
     balls.push({ x: r[3 * i]!, y: r[3 * i + 1]!, z: r[3 * i + 2]!, radius, colour: tone(i), strength });
   }
   for (let b = 0; b < molecule.bondCount; b++) {
@@ -91,7 +93,7 @@ export function modelGeometry(
     const order = molecule.bondOrders[b]!;
     const base = strong ? UNIT_ROD : hydrogen ? HYDROGEN_ROD : REST_ROD;
     const radius = order > 1 ? base * 0.7 : base;
-    const strength = strong ? 1 : REST_STRENGTH;
+    const strength = strong ? 1 : rest;
     const from = [r[3 * i]!, r[3 * i + 1]!, r[3 * i + 2]!] as const;
     const to = [r[3 * j]!, r[3 * j + 1]!, r[3 * j + 2]!] as const;
     const aside = order > 1 ? sideways(molecule, i, j) : null;

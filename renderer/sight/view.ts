@@ -25,6 +25,8 @@ const CAMERA_DISTANCE = 150;
 /** Half the height of the view around a unit, Å. */
 const HALF_HEIGHT = 3.45;
 const WIDE_HALF_HEIGHT = 4;
+/** What recedes is left out this much in front of the unit, Å. */
+const FRONT = 3;
 /** Width over height below which the view is drawn smaller. */
 const LEAST_ASPECT = 1.12;
 /** Length of a turn between units, ms. */
@@ -360,7 +362,8 @@ export class SightView {
     this.#camera.near = Math.max(0.5, distance - 80);
     this.#camera.far = distance + 120;
     this.#camera.updateProjectionMatrix();
-    this.#uniforms.values.depthRange.value.set(distance - 1, distance + 9);
+    this.#uniforms.values.depthRange.value.set(distance - 1, distance + 13);
+    this.#uniforms.values.front.value = distance - FRONT;
     this.#renderer.setPixelRatio(scale);
     this.#renderer.setSize(this.#width, this.#height, false);
     this.#renderer.setClearColor(0x000000, 1);

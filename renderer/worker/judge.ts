@@ -6,6 +6,7 @@ import { distortionOf } from '../../core/comparison/distortion.ts';
 import { Intention } from '../../core/comparison/intention.ts';
 import { Intentions, type IntentionSource } from '../../core/comparison/intentions.ts';
 import { parseTyped } from '../../core/comparison/typed.ts';
+import { crystalRecord } from '../../core/crystal/record.ts';
 import type { Relation, Settings, Verdict } from '../../core/docket.ts';
 import { examine } from '../../core/examine.ts';
 import { DEFAULT_LIMITS, type Entry, type EntryError } from '../../core/formats/format.ts';
@@ -71,6 +72,7 @@ export function judgeEntry(
     intended: null,
     mapping: null,
     distorted: [],
+    crystal: null,
   };
   if (entry.error || !entry.molecule) {
     return {
@@ -148,6 +150,7 @@ function judgeMolecule(
     intended: structure?.molecule ?? null,
     mapping: comparison?.mapping ?? null,
     distorted: docket.units.map(unit => distortionOf(examined.molecule, unit)),
+    crystal: entry.crystal ? crystalRecord(entry.crystal, false) : null,
   };
 }
 

@@ -3,6 +3,7 @@ import { z } from 'zod';
 import type { Molecule } from '../../core/chemistry/molecule.ts';
 import type { UnitVerdict } from '../../core/comparison/compare.ts';
 import type { Docket, Ladder, Relation, Settings, Verdict } from '../../core/docket.ts';
+import type { CrystalRecord } from '../../core/crystal/record.ts';
 import type { DataItem, EntryError } from '../../core/formats/format.ts';
 
 /** What the worst finding of an entry is, most urgent first. */
@@ -66,6 +67,8 @@ export interface Model {
   readonly mapping: Int32Array | null;
   /** Firmness that the rings at each unit allow where the measured one is far below it. */
   readonly distorted: readonly (number | null)[];
+  /** What the file says of the crystal and what follows for the absolute structure. */
+  readonly crystal: CrystalRecord | null;
 }
 
 const count = z.number().int().nonnegative();
