@@ -9,7 +9,6 @@ import { createWriteStream, existsSync, readFileSync, statSync } from 'node:fs';
 import { mkdtemp, readFile, rm } from 'node:fs/promises';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
-import { pathToFileURL } from 'node:url';
 import initRDKit from '@rdkit/rdkit';
 
 const ENTRIES = 20_000;
@@ -118,10 +117,4 @@ export async function run(report: (line: string) => void): Promise<void> {
   } finally {
     await rm(folder, { recursive: true, force: true });
   }
-}
-
-if (process.argv[1] !== undefined && import.meta.url === pathToFileURL(process.argv[1]).href) {
-  await run(line => {
-    process.stdout.write(`${line}\n`);
-  });
 }
