@@ -36,19 +36,18 @@ export function ringInfo(molecule: Molecule): RingInfo {
   const bondRingSize = new Uint16Array(bondCount);
   const atomRingSize = new Uint16Array(atomCount);
   const rings: Int32Array[] = [];
-  const ringsAt: number[][] = Array.from({ length: atomCount });
-  const known = new Set<string>();
+  const ringsAt: (readonly number[])[] = Array.from({ length: atomCount }, () => NONE);
+  const member = new Int32Array(atomCount).fill(-1);
   const search = new RingSearch(molecule, bondInRing);
   for (let b = 0; b < bondCount; b++) {
     if (bondInRing[b] === 0 || bondRingSize[b] !== 0) continue;
     const ring = search.shortest(b);
     spread(molecule, bondInRing, bondRingSize, b, ring.length);
-    const key = [...ring].sort((x, y) => x - y).join();
-    if (known.has(key)) continue;
-    known.add(key);
+    for (const atom of ring) member[atom] = b;
+    if (ringsAt[ring[0]!]!.some(index => isSameRing(rings[index]!, ring, member, b))) continue;
     for (const atom of ring) {
       if (atomRingSize[atom] === 0 || ring.length < atomRingSize[atom]!) atomRingSize[atom] = ring.length;
-      (ringsAt[atom] ??= []).push(rings.length);
+      ringsAt[atom] = [...ringsAt[atom]!, rings.length];
     }
     rings.push(ring);
   }
@@ -58,9 +57,16 @@ export function ringInfo(molecule: Molecule): RingInfo {
     atomRingSize,
     bondRingSize,
     rings,
-    ringsAt: Array.from({ length: atomCount }, (_, i) => ringsAt[i] ?? NONE),
+    ringsAt,
     system: ringSystems(molecule, bondInRing),
   };
+}
+
+/** Whether a known ring has the atoms of another, those that `member` marks with `mark`. */
+function isSameRing(known: Int32Array, ring: Int32Array, member: Int32Array, mark: number): boolean {
+  if (known.length !== ring.length) return false;
+  for (let k = 0; k < known.length; k++) if (member[known[k]!] !== mark) return false;
+  return true;
 }
 
 /** Gives a ring size to all bonds of the chain through a bond: past an atom of two ring bonds the same rings go on. */
@@ -99,11 +105,13 @@ function spread(
 export function ringBonds(molecule: Adjacency & Pick<Molecule, 'atomCount' | 'bondCount'>): Uint8Array {
   const { atomCount, bondCount, neighbourStart, neighbours, neighbourBonds } = molecule;
   const inRing = new Uint8Array(bondCount).fill(1);
-  const order = new Int32Array(atomCount);
-  const low = new Int32Array(atomCount);
-  const cursor = new Uint32Array(atomCount);
-  const entry = new Int32Array(atomCount).fill(-1);
-  const stack = new Int32Array(atomCount);
+  // One allocation for five arrays of the length of the atom list.
+  const scratch = new Int32Array(5 * atomCount);
+  const order = scratch.subarray(0, atomCount);
+  const low = scratch.subarray(atomCount, 2 * atomCount);
+  const cursor = scratch.subarray(2 * atomCount, 3 * atomCount);
+  const entry = scratch.subarray(3 * atomCount, 4 * atomCount).fill(-1);
+  const stack = scratch.subarray(4 * atomCount);
   let clock = 0;
   for (let root = 0; root < atomCount; root++) {
     if (order[root] !== 0) continue;

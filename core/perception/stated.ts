@@ -2,7 +2,7 @@
 import { IMPLICIT_HYDROGEN, LONE_PAIR, type Molecule, type StatedStereo } from '../chemistry/molecule.ts';
 import type { CentreCandidate } from './centres.ts';
 import type { PairCandidate } from './double-bonds.ts';
-import type { Ligand, StereoUnit } from './unit.ts';
+import type { Ligand, StereoUnit, UnitEnd, UnitKind } from './unit.ts';
 
 /** Statements by the atom they are made of: centres by their atom, the others by "lower-higher" end. */
 export interface StatedTable {
@@ -32,29 +32,31 @@ export function statedCentre(table: StatedTable, candidate: CentreCandidate): St
     const parity = orderParity(stated.ligands, candidate.ligands);
     if (parity !== 0) sense = (stated.turn === 'clockwise') === parity > 0 ? 1 : -1;
   }
-  return {
-    ...plain(candidate.labile, sense),
-    kind: 'centre',
-    atoms: [candidate.atom],
-    ends: [{ atom: candidate.atom, ligands: candidate.ligands }],
-    planar: false,
-  };
+  return plain(
+    'centre',
+    [candidate.atom],
+    [{ atom: candidate.atom, ligands: candidate.ligands }],
+    false,
+    candidate.labile,
+    sense,
+  );
 }
 
 /** A double bond or cumulene with the arrangement its notation states. */
 export function statedPair(table: StatedTable, candidate: PairCandidate): StereoUnit {
   const stated = table.pairs.get(pairKey(candidate.ends));
   const sense = stated === undefined ? 0 : statedSense(stated, candidate);
-  return {
-    ...plain(candidate.labile, sense),
-    kind: candidate.kind,
-    atoms: candidate.ends,
-    ends: [
+  return plain(
+    candidate.kind,
+    candidate.ends,
+    [
       { atom: candidate.ends[0], ligands: candidate.ligands[0] },
       { atom: candidate.ends[1], ligands: candidate.ligands[1] },
     ],
-    planar: candidate.kind === 'cumulene' && candidate.planar,
-  };
+    candidate.kind === 'cumulene' && candidate.planar,
+    candidate.labile,
+    sense,
+  );
 }
 
 function statedSense(
@@ -80,11 +82,20 @@ function statedSense(
   return positive ? 1 : -1;
 }
 
+/** A unit with nothing measured. */
 function plain(
+  kind: UnitKind,
+  atoms: readonly number[],
+  ends: readonly UnitEnd[],
+  planar: boolean,
   labile: string | null,
   sense: 1 | -1 | 0,
-): Omit<StereoUnit, 'kind' | 'atoms' | 'ends' | 'planar'> {
+): StereoUnit {
   return {
+    kind,
+    atoms,
+    ends,
+    planar,
     state: sense === 0 ? 'unspecified' : 'clear',
     sense,
     basis: 'notation',
