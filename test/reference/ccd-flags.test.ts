@@ -20,7 +20,7 @@ const ACID =
 const RUTHENIUM =
   'ours: the ranking is by Rule 1a, and the signed volume by hand from the ideal coordinates is negative (P-92.1.3.1, P-31.1.4.3.4); the model coordinates of the component are flat and cannot have given the flag either';
 const ADAMANTANE =
-  'both: the flag leaves out bridgeheads that only an in/out isomer would change; by Rules 5 and 6 they are centres, R, S, r or s (P-93.5.3, J. Chem. Inf. Model. 2018, 58, 1755), as the witness labels them too where a SMILES states them';
+  'both: the flag leaves out the bridgeheads of an adamantyl group, which only an in/out isomer would change; beside a chiral group their bridges differ by Rule 4b (P-92.5.2), so that they are R or S, as the witness labels them too where a SMILES states them';
 
 /** "component unit", the flag, our letter ("N" for none), and who is right by which paragraph. */
 const ADJUDICATED: readonly (readonly [string, string, string, string])[] = [
@@ -32,14 +32,9 @@ const ADJUDICATED: readonly (readonly [string, string, string, string])[] = [
   ],
   ['11R CAK', 'S', 'R', `${RUTHENIUM}: (CAB, CAL, CAJ) −2.37 Å³`],
   ['11R CCG', 'S', 'R', `${RUTHENIUM}: (NCL, CCF, CCH) −2.43 Å³`],
-  ['6KK C51', 'N', 'r', ADAMANTANE],
   ['6KK C53', 'N', 'R', ADAMANTANE],
   ['6KK C55', 'N', 'R', ADAMANTANE],
   ['6KK C57', 'N', 'R', ADAMANTANE],
-  ['ADM C1', 'N', 's', ADAMANTANE],
-  ['ADM C3', 'N', 's', ADAMANTANE],
-  ['ADM C5', 'N', 's', ADAMANTANE],
-  ['ADM C7', 'N', 's', ADAMANTANE],
   ['ATP PA', 'R', 'N', ACID],
   ['ATP PB', 'R', 'N', ACID],
   [
