@@ -55,6 +55,8 @@ const DOUBTFUL_ANGLES: readonly [number, number] = [340, 352];
 const LINEAR_ANGLE = 158;
 /** Angle above which a two-coordinate carbon without its hydrogens may be flat (109.5° tetrahedral, 120° flat). */
 const OPEN_ANGLE = 115;
+/** Score (0 double, 1 single) below which a bond is double whatever the angles. */
+const CLEARLY_DOUBLE = 0.25;
 /** Largest mean torsion of a flat ring of five or six, degrees. */
 const FLAT_RING_TORSION = 12;
 
@@ -229,7 +231,8 @@ class OrderFinder {
       // With its hydrogens listed, a two-coordinate carbon is linear or lacks one.
       if (!p.some(j => this.z[j] === 6 || this.z[j] === 7 || this.z[j] === 8 || this.z[j] === 16))
         return false;
-      return angle > OPEN_ANGLE && Math.min(this.score(i, p[0]!), this.score(i, p[1]!)) < 0.62;
+      const best = Math.min(this.score(i, p[0]!), this.score(i, p[1]!));
+      return best < CLEARLY_DOUBLE || (angle > OPEN_ANGLE && best < 0.62);
     }
     if (p.length === 1) return this.score(i, p[0]!) < 0.5;
     return false;
@@ -349,6 +352,13 @@ class OrderFinder {
     if (p.length !== 2 || (z[i] !== 6 && z[i] !== 7)) return;
     const [a, b] = p as [number, number];
     if (this.fixed[a] || this.fixed[b] || this.angle(a, i, b) < LINEAR_ANGLE) return;
+    if (z[i] === 6 && this.pi[i] === 1) {
+      // A cumulene goes on.
+      const next = this.orders[this.bondOf(i, a)] === 2 ? b : a;
+      if (this.score(i, next) < 0.45 && this.pi[next]! < 2 && (z[next] !== 8 || this.pi[next] === 0))
+        this.set(i, next, 2);
+      return;
+    }
     if (this.pi[i]! > 0) return;
     if (z[i] === 7) {
       // Azide, diazo (charges on the ends), isonitrile.
@@ -377,6 +387,9 @@ class OrderFinder {
       const q = this.partners(j);
       if (z[j] === 7) return q.length === 1 && length < 1.22;
       if (z[j] !== 6 || length > 1.28) return false;
+      // Between two short bonds it is the middle of a cumulene.
+      const beyond = p.find(other => other !== j)!;
+      if (z[beyond] === 6 && this.score(i, beyond) < CLEARLY_DOUBLE) return false;
       return q.length === 1 || (q.length === 2 && this.angle(q[0]!, j, q[1]!) > LINEAR_ANGLE);
     };
     // The shorter bond first.
@@ -492,7 +505,10 @@ class OrderFinder {
       else if (z === 7) {
         const oxide = this.charges[i] === 1 && p.length === 3;
         if (oxide) need[i] = 2;
-        else if (this.charges[i] === 0 && p.length <= 2) need[i] = 1;
+        else if (this.charges[i] === 0 && this.unsaturatedNitrogen(i, p)) {
+          // Hydrogens are listed and this nitrogen has none.
+          need[i] = 2;
+        } else if (this.charges[i] === 0 && p.length <= 2) need[i] = 1;
         else if (this.charges[i] === 0 && p.length === 3 && this.flat[i]) late[i] = 1;
       } else if (z === 8 && p.length === 1 && !this.anionic[i] && this.charges[i] === 0) need[i] = 1;
       else if (z === 16 && p.length === 1 && !this.anionic[i]) need[i] = 1;
@@ -522,6 +538,11 @@ class OrderFinder {
       const j = partner[i]!;
       if (j > i) this.set(i, j, 2);
     }
+  }
+
+  private unsaturatedNitrogen(i: number, p: readonly number[]): boolean {
+    if (p.length !== 2 || !this.carbonHydrogens[i] || this.hasMetal(i)) return false;
+    return p.every(j => this.z[j] !== 1) && p.some(j => this.score(i, j) < 0.75);
   }
 
   /** Double bonds that stand alone and are short: nothing else can claim their atoms. */

@@ -10,6 +10,9 @@ import { covalentRadius } from './covalent-radii.ts';
 
 /** Added to the sum of the radii, Å. */
 export const BOND_TOLERANCE = 0.4;
+/** The same between two atoms of the second period (the longest C–C bonds known are 1.8 Å), and between two halogens. */
+export const SECOND_PERIOD_TOLERANCE = 0.3;
+export const HALOGEN_TOLERANCE = 0.2;
 /** The same where one partner is a metal. */
 export const METAL_TOLERANCE = 0.3;
 /** Atoms nearer than this fraction of the sum of their radii are one atom in two places, not a bond. */
@@ -18,8 +21,15 @@ export const OVERLAP_FRACTION = 0.55;
 /** Longest bond between two elements, Å; 0 where they never bond (H–H aside from H2, the metals of groups 1 and 2 that form ions). */
 export function longestBond(z1: number, z2: number): number {
   if (z1 === 0 || z2 === 0 || isIonic(z1) || isIonic(z2) || isNoble(z1) || isNoble(z2)) return 0;
-  const metal = isMetal(z1) || isMetal(z2);
-  return covalentRadius(z1) + covalentRadius(z2) + (metal ? METAL_TOLERANCE : BOND_TOLERANCE);
+  return covalentRadius(z1) + covalentRadius(z2) + tolerance(z1, z2);
+}
+
+function tolerance(z1: number, z2: number): number {
+  if (isMetal(z1) || isMetal(z2)) return METAL_TOLERANCE;
+  const second = (z: number): boolean => z >= 6 && z <= 9;
+  if (second(z1) && second(z2)) return SECOND_PERIOD_TOLERANCE;
+  const halogen = (z: number): boolean => z === 17 || z === 35 || z === 53;
+  return halogen(z1) && halogen(z2) ? HALOGEN_TOLERANCE : BOND_TOLERANCE;
 }
 
 /** Na, K, Rb, Cs, Ca, Sr, Ba and their heavier kin: contacts of their ions are no bonds. */
