@@ -167,7 +167,7 @@ export function entryRecord(source: EntrySource): EntryRecord {
     file: source.file,
     entry: entry.entry,
     name: entry.name,
-    formula: docket.molecules.map(({ formula }) => formula).join('.'),
+    formula: formulaOf(docket),
     atoms: molecule.atomCount,
     units,
     ...(several && { molecules: moleculeRecords(docket, comparison) }),
@@ -232,6 +232,13 @@ export function unreadableRecord(
   };
 }
 
+/** The formulas of the molecules of an entry, in order of appearance, alike ones counted: `C6H5Cl.25H2O`. */
+function formulaOf(docket: Docket): string {
+  const counts = new Map<string, number>();
+  for (const { formula } of docket.molecules) counts.set(formula, (counts.get(formula) ?? 0) + 1);
+  return [...counts].map(([formula, count]) => (count > 1 ? `${count}${formula}` : formula)).join('.');
+}
+
 function ownerTable(atomCount: number, docket: Docket): Int32Array {
   const owner = new Int32Array(atomCount);
   for (const { id, atoms } of docket.molecules) for (const atom of atoms) owner[atom] = id;
@@ -272,7 +279,10 @@ function unitRecord(
     kind: unit.kind,
     atoms: unit.atoms.map(atom => atom + 1),
     labels: unit.atoms.map(atom => atomLabel(molecule, atom, elementSymbol)),
-    ...(residue && { residue: `${residue.chain}/${residue.residue}/${residue.number}` }),
+    ...(residue &&
+      (residue.chain !== '' || residue.number !== '') && {
+        residue: `${residue.chain}/${residue.residue}/${residue.number}`,
+      }),
     ...(moleculeOf && { molecule: moleculeOf[first]! }),
     descriptor: labelled.descriptor,
     state: unit.state,
