@@ -3,7 +3,13 @@ import type { Molecule } from '../chemistry/molecule.ts';
 import type { Descriptor, Docket, Relation, Verdict } from '../docket.ts';
 import type { StereoUnit, UnitKind } from '../perception/unit.ts';
 import { supplyBonding } from './bonding.ts';
-import { type Fragment, type FragmentOptions, type Fragments, fragmentsOf } from './fragment.ts';
+import {
+  type Fragment,
+  type FragmentOptions,
+  type Fragments,
+  fragmentsOf,
+  PLAIN_FRAGMENTS,
+} from './fragment.ts';
 import type { Intention } from './intention.ts';
 import {
   type FragmentMatch,
@@ -92,16 +98,17 @@ export function compareEntry(
     const pairing = pairPart(examined.molecule, intention, cut);
     if (pairing) return judge(examined, intention, pairing, examine);
   }
-  return otherCompound(examined, firstProblem ?? 'the intention holds no atoms');
+  return otherCompound(examined, intention, firstProblem ?? 'the intention holds no atoms');
 }
 
-function otherCompound(examined: Examined, difference: string): EntryComparison {
-  const largest = principal(fragmentsOf(examined.molecule).list);
+function otherCompound(examined: Examined, intention: Intention, difference: string): EntryComparison {
+  const chief = principalIntended(intention.cut(PLAIN_FRAGMENTS).list);
+  const likeliest = nearest(fragmentsOf(examined.molecule).list, chief?.fragment.count ?? 0);
   return {
     examined,
     relation: 'other compound',
     units: examined.docket.units.map(({ unit }, u) => openUnit(u, unit.kind)),
-    molecules: largest ? [{ atoms: largest.atoms, relation: 'other compound' }] : [],
+    molecules: likeliest ? [{ atoms: likeliest.atoms, relation: 'other compound' }] : [],
     mapping: null,
     equivalentMappings: 0,
     choices: [],
@@ -128,6 +135,15 @@ function principal<T extends { readonly count: number }>(list: readonly T[]): T 
   let largest: T | null = null;
   for (const fragment of list) if (!largest || fragment.count > largest.count) largest = fragment;
   return largest;
+}
+
+/** The molecule whose size is nearest to what is looked for: the one of which a difference is worth naming. */
+function nearest(list: readonly Fragment[], count: number): Fragment | null {
+  let best: Fragment | null = null;
+  for (const fragment of list) {
+    if (!best || Math.abs(fragment.count - count) < Math.abs(best.count - count)) best = fragment;
+  }
+  return best;
 }
 
 function principalIntended(list: readonly IntendedFragment[]): IntendedFragment | null {
@@ -164,9 +180,9 @@ function pairWhole(
     if (candidates.length > 0) matches.push({ model: f, candidates });
   });
   if (chiefMatched) return { cut, fragments, matches };
-  const largest = principal(fragments.list);
+  const likeliest = nearest(fragments.list, chief.fragment.count);
   return {
-    problem: problem ?? (largest ? firstDifference(chief.fragment, largest) : 'the model holds no atoms'),
+    problem: problem ?? (likeliest ? firstDifference(chief.fragment, likeliest) : 'the model holds no atoms'),
   };
 }
 
@@ -216,6 +232,7 @@ function judge(
       !pairs || 'problem' in pairs
         ? otherCompound(
             again,
+            intention,
             pairs?.problem ?? 'the intention does not fit once its bond orders are supplied',
           )
         : judgeAsItStands(again, intention, pairs, [...warnings]);
