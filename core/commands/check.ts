@@ -35,6 +35,9 @@ import { LineFile, openSink, type Sink } from './output.ts';
 import { Progress } from './progress.ts';
 import { openInput } from './reading.ts';
 
+/** Formats in which every entry of the file is one model and one line of output. */
+const ONE_MODEL_FORMATS: ReadonlySet<string> = new Set(['SDF', 'SMILES', 'InChI']);
+
 /** Bytes of input from which several threads pay for their start. */
 const MANY_BYTES = 4 * 1024 * 1024;
 
@@ -299,6 +302,8 @@ class Check {
   async #file(file: string): Promise<void> {
     try {
       const { format, entries } = await openInput(this.#io, file, this.#plan.options.limits);
+      // What an earlier run did of a file of several models to an entry cannot be told by its lines: it is done again.
+      if (!ONE_MODEL_FORMATS.has(format.name)) await this.#stopResuming();
       const wanted = this.#resumed(file, this.#sharded(entries));
       const batches = batchesOf(file, format, wanted, file === '-');
       let read = 0;

@@ -225,6 +225,36 @@ describe('check', () => {
     expect(place.read('sum.json')).toBe(summary);
   });
 
+  it('checks a file of several models again as a whole when it goes on', async () => {
+    const atom = (serial: number, name: string, x: number, y: number, z: number): string =>
+      `HETATM${String(serial).padStart(5)} ${name.padEnd(4)} LIG A   1    ${[x, y, z].map(value => value.toFixed(3).padStart(8)).join('')}  1.00 10.00          ${name.replace(/\d/, '').toUpperCase().padStart(2)}`;
+    const modelOf = (number: number, hand: 1 | -1): string[] => [
+      `MODEL     ${String(number).padStart(4)}`,
+      atom(1, 'C1', 0, 0, 0),
+      atom(2, 'BR2', 1.83, 0, 0.64),
+      atom(3, 'CL3', -0.83, -1.44 * hand, 0.58),
+      atom(4, 'F4', -0.64, 1.1 * hand, 0.45),
+      atom(5, 'H5', 0, 0, -1.09),
+      'ENDMDL',
+    ];
+    place.write(
+      'models.pdb',
+      `${[...modelOf(1, 1), ...modelOf(2, -1), ...modelOf(3, 1), 'END'].join('\n')}\n`,
+    );
+    const args = ['check', 'models.pdb', '--intended', 'F[C@](Cl)(Br)[H]', '--lines', 'out.jsonl'];
+    await place.run(args);
+    const whole = place.read('out.jsonl');
+    expect(
+      whole
+        .trim()
+        .split('\n')
+        .map(line => (JSON.parse(line) as { relation: string }).relation),
+    ).toEqual(['same', 'enantiomer', 'same']);
+    place.write('out.jsonl', whole.slice(0, whole.indexOf('\n') + 5));
+    await place.run([...args, '--resume']);
+    expect(place.read('out.jsonl')).toBe(whole);
+  });
+
   it('ends in order when interrupted and leaves the old clean set alone', async () => {
     place.write('poses.sdf', Array.from({ length: 200 }, (_, k) => halide(`p${k}`, 1)).join(''));
     place.write('clean.sdf', 'as it was');

@@ -137,6 +137,28 @@ describe('verdicts', () => {
     expect(result.warnings.join()).toMatch(/isotopes/);
   });
 
+  it('calls a unit relabelled when a covalent attachment outranks what was free', () => {
+    // A hydrogen of C1 gives way to the sulfur of a polymer residue: C1 now ranks above C3 at C2, and nothing moved.
+    const sulfur = hydrogenOf(0);
+    const bound = replaced(model, new Map([[sulfur, 16]]));
+    const residues = Array.from({ length: model.atomCount }, (_, atom) => ({
+      chain: 'A',
+      residue: atom === sulfur ? 'CYS' : 'LIG',
+      number: atom === sulfur ? '42' : '500',
+      atomName: atom === sulfur ? 'SG' : `X${atom}`,
+      hetero: atom !== sulfur,
+    }));
+    const result = compared({ ...bound, residues }, intended);
+    expect(result.relation).toBe('same');
+    expect(verdicts(result)).toMatchObject({
+      'centre 1': 'relabelled',
+      'centre 3': 'agrees',
+      'centre 5': 'agrees',
+    });
+    // The same sulfur as part of the ligand makes it another compound.
+    expect(compared(bound, intended).relation).toBe('other compound');
+  });
+
   it('calls a change of the letter that comes with a change in space inverted', () => {
     expect(
       compared('F[C@@](Cl)([13CH3])C', 'F[C@](Cl)([13CH3])C').units.map(({ verdict }) => verdict),
