@@ -73,6 +73,16 @@ function view(molecule: Molecule, labelled: LabelledUnit, side: Side): string {
       ? `${name}, seen across its plane: ${letter}.`
       : `${name}, seen across its plane: 1 and 1′ stand on ${same ? 'the same side' : 'opposite sides'}, ${letter}.`;
   }
+  if (unit.kind === 'helix') {
+    const way = unit.sense > 0 ? 'clockwise' : 'anticlockwise';
+    return `${name}, seen along the helix: from the front end to the rear it winds ${way}, ${letter}.`;
+  }
+  if (unit.kind === 'plane' && labelled.torsionAtoms !== null) {
+    const [pilot, ...plane] = labelled.torsionAtoms.map(atom => ligandName(molecule, atom));
+    const way = descriptor === 'P' ? 'clockwise' : 'anticlockwise';
+    const run = descriptor === null ? letter : `a to b to c runs ${way}, ${letter}`;
+    return `${name}, plane seen from the pilot atom ${pilot}: ${run} (${plane.join(', ')}).`;
+  }
   if (labelled.torsion === null) return `${name}: ${letter}.`;
   const clockwise = labelled.torsion > 0;
   return `${name}, seen end-on: front 1 to rear 1′ runs ${clockwise ? 'clockwise' : 'anticlockwise'} by the shorter way, ${letter}.`;

@@ -15,6 +15,8 @@ const LIST = [
   ['intend', 'State the intended configuration…', 'File', 'Ctrl+I'],
   ['intend-file', 'Take the intended configuration from a file…', 'File', null],
   ['intend-nothing', 'Withdraw the intended configuration', 'File', null],
+  ['record-html', 'Save the record…', 'File', 'Ctrl+S'],
+  ['record-csv', 'Save the record as a table…', 'File', null],
   ['save-agreeing', 'Save the entries that agree…', 'File', null],
   ['save-inverted', 'Save the inverted entries…', 'File', null],
   ['save-figure', 'Save the sight as a figure…', 'File', 'Ctrl+Shift+S'],

@@ -386,6 +386,26 @@ export class Controller {
     if (saved !== null) this.announce(`${indices.length} entries saved in ${saved}.`);
   }
 
+  async #record(form: 'html' | 'csv'): Promise<void> {
+    const { files, rows, rowCount, present } = this.store.get();
+    if (rowCount === 0) return;
+    const marks: Parameters<ChemistryClient['record']>[3] = [];
+    for (const [key, { mark, remark }] of Object.entries(present.judgements)) {
+      const [, name, entry, atoms] = /^(.*)#(\d+):([\d-]*)$/u.exec(key) ?? [];
+      const file = files.findIndex(one => one.name === name);
+      const row = rows.slice(0, rowCount).find(one => one.file === file && one.entry === Number(entry));
+      if (mark === null || !row || atoms === undefined) continue;
+      marks.push({ index: row.index, atoms: atoms.split('-').map(Number), mark, remark });
+    }
+    const { version } = await this.#host.info();
+    const date = new Date().toISOString().slice(0, 10);
+    const bytes = await this.#chemistry.record(form, version, date, marks);
+    if (bytes === null) return;
+    const stem = (files[0]?.name ?? 'models').replace(/\.gz$/u, '').replace(/\.[^.]*$/u, '');
+    const saved = await this.#host.save({ name: `${stem}-record.${form}`, bytes, extensions: [form] });
+    if (saved !== null) this.announce(`The record is saved as ${saved}.`);
+  }
+
   async #saveFigure(): Promise<void> {
     const { model, unit, files } = this.store.get();
     const labelled = model?.docket?.units[unit];
@@ -437,6 +457,12 @@ export class Controller {
         break;
       case 'intend-nothing':
         this.#intend(null);
+        break;
+      case 'record-html':
+        this.#record('html').catch(fail);
+        break;
+      case 'record-csv':
+        this.#record('csv').catch(fail);
         break;
       case 'save-agreeing':
         this.#save('agree').catch(fail);

@@ -25,6 +25,7 @@ export const TEXT = {
   ladderSteps: 'Comparisons',
   ledger: 'Ledger',
   drawing: 'Drawing',
+  wholeModel: 'The whole model. It has no stereogenic units.',
   noUnits: 'No stereogenic units.',
   noLadder: 'Nothing was ranked for this unit.',
   noSpace:

@@ -15,6 +15,11 @@ import { measure, TEXT } from '../text.ts';
 import { useAppState, useController } from '../use-store.ts';
 import { DrawingPanel } from './drawing.tsx';
 
+/** A text as a sentence: a capital first, a stop at the end. */
+function sentence(text: string): string {
+  return text === '' ? '' : `${text.charAt(0).toUpperCase()}${text.slice(1).replace(/\.$/u, '')}.`;
+}
+
 /** Radians for one px of dragging, and for one press of an arrow key. */
 const DRAG = 0.009;
 const PRESS = 0.12;
@@ -32,10 +37,11 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
   const molecule = model?.molecule ?? null;
   const inSpace = molecule !== null && molecule.dimension === 3;
   const intended = shown?.verdict === 'inverted' ? shown.intended : null;
-  const words = molecule && labelled ? caption(molecule, labelled, shown, side) : '';
+  const words =
+    molecule && labelled ? caption(molecule, labelled, shown, side) : molecule ? TEXT.wholeModel : '';
   const content = useMemo<SightContent | null>(
-    () => (molecule && inSpace ? { molecule, labelled, caption: words, intended } : null),
-    [molecule, inSpace, labelled, words, intended],
+    () => (molecule && inSpace ? { molecule, labelled, intended } : null),
+    [molecule, inSpace, labelled, intended],
   );
 
   useLayoutEffect(() => {
@@ -130,7 +136,13 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
         onKeyDown={onKey}
       >
         <canvas ref={canvas} aria-hidden="true" />
-        <svg ref={overlay} className="dial" role="img" aria-label={words} data-side={side} />
+        <svg
+          ref={overlay}
+          className="dial"
+          role="img"
+          aria-label={words === '' ? TEXT.sight : words}
+          data-side={side}
+        />
         {molecule && labelled && (
           <div className="sight-title">
             <Glyph
@@ -167,14 +179,14 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
             {model?.warnings.map(text => (
               <span key={text} className="warning">
                 {' '}
-                {text}.
+                {sentence(text)}
               </span>
             ))}
             {model?.crystal && (
               <span className="crystal">
                 {model.crystal.spaceGroup ? <b>{model.crystal.spaceGroup}</b> : null} {TEXT.absoluteStructure}{' '}
                 <b>{model.crystal.absoluteStructure.replace('-', ' ')}</b>: {model.crystal.reason}.{' '}
-                {model.crystal.standing}
+                {sentence(model.crystal.standing)}
               </span>
             )}
             {model?.difference ? <span className="warning"> {model.difference}.</span> : null}
@@ -187,7 +199,7 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
             {labelled?.warnings.map(text => (
               <span key={text} className="warning">
                 {' '}
-                {text}.
+                {sentence(text)}
               </span>
             ))}
           </p>

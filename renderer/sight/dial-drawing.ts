@@ -98,16 +98,15 @@ export function dialGroup(drawing: DialDrawing): SVGElement {
     );
   }
   for (const stub of dial.stubs) {
-    const reach = Math.hypot(stub.x, stub.y);
-    if (reach < 0.2) continue;
-    const k = scale;
-    const end: [number, number] = [cx + k * stub.x, cy - k * stub.y];
-    line(
-      [cx + 0.3 * (end[0] - cx), cy + 0.3 * (end[1] - cy)],
-      end,
-      stub.hydrogen ? 'dial-stub' : 'dial-lone',
-      1.6,
-    );
+    const dx = stub.x - stub.fromX;
+    const dy = stub.y - stub.fromY;
+    if (Math.hypot(dx, dy) < 0.2) continue;
+    const place = (t: number): [number, number] => [
+      cx + scale * (stub.fromX + t * dx),
+      cy - scale * (stub.fromY + t * dy),
+    ];
+    const end = place(1);
+    line(place(0.36), end, stub.hydrogen ? 'dial-stub' : 'dial-lone', 1.6);
     parts.push(
       element('circle', {
         cx: end[0],
@@ -141,8 +140,17 @@ export function dialGroup(drawing: DialDrawing): SVGElement {
       'data-end': numeral.end === null ? '' : String(numeral.end),
     });
     group.append(
-      element('circle', { cx: x, cy: y, r: NUMERAL, class: 'numeral-paper' }),
-      element('text', { x, y, class: 'numeral-text' }, numeral.text),
+      element('circle', {
+        cx: x,
+        cy: y,
+        r: numeral.text.length > 2 ? 2 * NUMERAL : NUMERAL,
+        class: 'numeral-paper',
+      }),
+      element(
+        'text',
+        { x, y, class: `numeral-text${numeral.text.length > 2 ? ' numeral-word' : ''}` },
+        numeral.text,
+      ),
     );
     parts.push(group);
   }

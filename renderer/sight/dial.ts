@@ -1,7 +1,8 @@
 /** The dial of a sighted unit, worked out for one direction of view: where the numerals stand, how the sweep runs. */
 import { IMPLICIT_HYDROGEN, type Molecule } from '../../core/chemistry/molecule.ts';
 import type { LabelledUnit } from '../../core/docket.ts';
-import { type DialPlace, dialPlaces, type SightFrame } from '../../core/record/sight-frame.ts';
+import { type DialPlace, dialPlaces, project, type SightFrame } from '../../core/record/sight-frame.ts';
+import { helixRim } from './frames.ts';
 
 export interface Numeral {
   /** "1", "2", "3", "4"; with a prime at the second end. */
@@ -25,6 +26,15 @@ export interface Sweep {
   readonly clockwise: boolean;
 }
 
+export interface Stub {
+  readonly hydrogen: boolean;
+  /** Where its atom stands. */
+  readonly fromX: number;
+  readonly fromY: number;
+  readonly x: number;
+  readonly y: number;
+}
+
 export interface Dial {
   readonly shape: 'ring' | 'bar' | 'dotted';
   /** Å. */
@@ -37,12 +47,7 @@ export interface Dial {
   /** For a double bond: direction of the line through both ends, radians. */
   readonly axis: number | null;
   /** Implicit hydrogens and lone pairs, from where to where, Å in the view. */
-  readonly stubs: readonly {
-    readonly hydrogen: boolean;
-    readonly x: number;
-    readonly y: number;
-    readonly z: number;
-  }[];
+  readonly stubs: readonly Stub[];
   /** The fourth, when it is hidden behind the centre. */
   readonly hidden: Numeral | null;
 }
@@ -63,6 +68,8 @@ function forward(from: number, to: number): number {
 /** The dial in a view. `frame` need not be the sight itself: the view may have been turned. */
 export function dialOf(molecule: Molecule, labelled: LabelledUnit, frame: SightFrame): Dial {
   const { unit, descriptor } = labelled;
+  if (unit.kind === 'helix') return helixDial(molecule, labelled, frame);
+  if (unit.kind === 'plane') return planeDial(molecule, labelled, frame);
   const places = dialPlaces(molecule, labelled, frame);
   const axial = unit.ends.length === 2 && unit.kind !== 'double-bond' && !unit.planar;
   const numerals = places.map(place => numeralOf(place, unit.kind === 'centre'));
@@ -83,7 +90,11 @@ export function dialOf(molecule: Molecule, labelled: LabelledUnit, frame: SightF
     axis: unit.ends.length === 2 && !axial ? endAxis(molecule, labelled, frame) : null,
     stubs: places
       .filter(place => place.ligand < 0)
-      .map(({ ligand, x, y, z }) => ({ hydrogen: ligand === IMPLICIT_HYDROGEN, x, y, z })),
+      .map(({ ligand, end, x, y }) => {
+        const atom = unit.ends[end === 2 ? 1 : 0]!.atom;
+        const [fromX, fromY] = atomAt(molecule, atom, frame);
+        return { hydrogen: ligand === IMPLICIT_HYDROGEN, fromX, fromY, x, y };
+      }),
     hidden: fourth && fourth.distance < HIDDEN ? fourth : null,
   };
 }
@@ -136,4 +147,84 @@ function endAxis(molecule: Molecule, labelled: LabelledUnit, frame: SightFrame):
     y += d * frame.up[k]!;
   }
   return Math.atan2(y, x);
+}
+
+function atomAt(molecule: Molecule, atom: number, frame: SightFrame): readonly [number, number, number] {
+  const r = molecule.coordinates!;
+  return project(frame, [r[3 * atom]!, r[3 * atom + 1]!, r[3 * atom + 2]!]);
+}
+
+function shapeOf(
+  labelled: LabelledUnit,
+): Pick<Dial, 'shape' | 'doubled' | 'firmness' | 'stubs' | 'hidden' | 'axis'> {
+  const { state, firmness } = labelled.unit;
+  return {
+    shape: state === 'flat' ? 'bar' : state === 'unspecified' ? 'dotted' : 'ring',
+    doubled: false,
+    firmness: firmness ?? 1,
+    stubs: [],
+    hidden: null,
+    axis: null,
+  };
+}
+
+/** Room for the inner rim of a helix, Å. */
+const HELIX_RADIUS = 3.1;
+
+/** Along a helix: from the end in front along the rim to the rear end. */
+function helixDial(molecule: Molecule, labelled: LabelledUnit, frame: SightFrame): Dial {
+  const rim = helixRim(molecule, labelled).map(atom => ({ atom, place: atomAt(molecule, atom, frame) }));
+  const first = rim[0];
+  const last = rim.at(-1);
+  if (first && last && first.place[2] < last.place[2]) rim.reverse();
+  const angle = ({ place }: { place: readonly [number, number, number] }): number =>
+    Math.atan2(place[1], place[0]);
+  let turn = 0;
+  for (let k = 1; k < rim.length; k++) {
+    const d = angle(rim[k]!) - angle(rim[k - 1]!);
+    turn += Math.atan2(Math.sin(d), Math.cos(d));
+  }
+  const ends = [rim[0], rim.at(-1)].filter(end => end !== undefined);
+  return {
+    ...shapeOf(labelled),
+    radius: HELIX_RADIUS,
+    numerals: ends.map((end, k) => ({
+      text: k === 0 ? 'front' : 'rear',
+      rank: 1,
+      end: k === 0 ? 1 : 2,
+      ligand: end.atom,
+      angle: angle(end),
+      distance: Math.hypot(end.place[0], end.place[1]),
+      depth: end.place[2],
+      onRing: true,
+    })),
+    sweep:
+      labelled.descriptor !== null && rim.length > 1
+        ? { from: angle(rim[0]!), turn, clockwise: turn < 0 }
+        : null,
+  };
+}
+
+/** Onto a chirality plane: a, b and c in a row. */
+function planeDial(molecule: Molecule, labelled: LabelledUnit, frame: SightFrame): Dial {
+  const atoms = labelled.torsionAtoms?.slice(1) ?? [];
+  const numerals = atoms.map((atom, k): Numeral => {
+    const [x, y, z] = atomAt(molecule, atom, frame);
+    return {
+      text: 'abc'.charAt(k),
+      rank: k + 1,
+      end: null,
+      ligand: atom,
+      angle: Math.atan2(y, x),
+      distance: Math.hypot(x, y),
+      depth: z,
+      onRing: true,
+    };
+  });
+  return {
+    ...shapeOf(labelled),
+    radius: CENTRE_RADIUS,
+    numerals,
+    sweep: labelled.descriptor === null ? null : centreSweep(numerals),
+  };
 }

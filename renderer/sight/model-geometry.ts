@@ -2,6 +2,7 @@
 import { bondBetween, isLocated, type Molecule } from '../../core/chemistry/molecule.ts';
 import type { LabelledUnit } from '../../core/docket.ts';
 import { elementTone } from './colours.ts';
+import { helixRim } from './frames.ts';
 import type { Ball, Rod } from './impostors.ts';
 
 export interface ModelLook {
@@ -34,6 +35,15 @@ export function unitAtoms(molecule: Molecule, labelled: LabelledUnit): ReadonlyM
   for (const atom of labelled.unit.atoms) atoms.set(atom, 'own');
   for (const end of labelled.unit.ends) atoms.set(end.atom, 'own');
   for (const atom of between(molecule, labelled)) atoms.set(atom, 'own');
+  if (labelled.unit.kind === 'helix') {
+    for (const atom of helixRim(molecule, labelled)) atoms.set(atom, 'own');
+  }
+  if (labelled.unit.kind === 'plane' && labelled.torsionAtoms) {
+    atoms.clear();
+    const [pilot, ...plane] = labelled.torsionAtoms;
+    atoms.set(pilot, 'ligand');
+    for (const atom of plane) atoms.set(atom, 'own');
+  }
   return atoms;
 }
 

@@ -12,10 +12,12 @@ import {
 import { elementSymbol } from '../../core/chemistry/elements.ts';
 import { atomLabel, isLocated, type Molecule } from '../../core/chemistry/molecule.ts';
 import type { Descriptor, LabelledUnit } from '../../core/docket.ts';
-import { type SightFrame, sightFrame } from '../../core/record/sight-frame.ts';
+import type { SightFrame } from '../../core/record/sight-frame.ts';
+import type { UnitKind } from '../../core/perception/unit.ts';
 import { DARK, LIGHT } from './colours.ts';
 import { dialOf } from './dial.ts';
 import { dialGroup, dialWords } from './dial-drawing.ts';
+import { frameOf } from './frames.ts';
 import { ballMesh, InkUniforms, rodMesh } from './impostors.ts';
 import { modelGeometry, unitAtoms } from './model-geometry.ts';
 
@@ -24,7 +26,14 @@ const FIELD = 20;
 const CAMERA_DISTANCE = 150;
 /** Half the height of the view around a unit, Å. */
 const HALF_HEIGHT = 3.45;
-const WIDE_HALF_HEIGHT = 4;
+const HALF_HEIGHTS: Readonly<Record<UnitKind, number>> = {
+  centre: HALF_HEIGHT,
+  'double-bond': 4,
+  cumulene: 4.2,
+  axis: 4.2,
+  helix: 5.4,
+  plane: 3.9,
+};
 /** What recedes is left out this much in front of the unit, Å. */
 const FRONT = 3;
 /** Width over height below which the view is drawn smaller. */
@@ -41,7 +50,6 @@ export type Side = 'sight' | 'far' | 'free';
 export interface SightContent {
   readonly molecule: Molecule;
   readonly labelled: LabelledUnit | null;
-  readonly caption: string;
   /** The letter that was asked for where the found one is inverted. */
   readonly intended: string | null;
 }
@@ -278,12 +286,12 @@ export class SightView {
     const { molecule, labelled } = this.#content ?? {};
     const r = molecule?.coordinates;
     if (!molecule || !r) return this.#pose;
-    const frame = labelled ? sightFrame(molecule, labelled) : null;
+    const frame = labelled ? frameOf(molecule, labelled) : null;
     if (frame && labelled) {
       return {
         turn: rotationOf(frame),
         pivot: new Vector3(...frame.origin),
-        halfHeight: labelled.unit.ends.length === 2 ? WIDE_HALF_HEIGHT : HALF_HEIGHT,
+        halfHeight: HALF_HEIGHTS[labelled.unit.kind],
       };
     }
     const middle = new Vector3();
@@ -423,7 +431,6 @@ export class SightView {
     const content = this.#content;
     if (!content?.labelled || !content.molecule.coordinates) {
       this.#svg.replaceChildren();
-      this.#svg.setAttribute('aria-label', content?.caption ?? '');
       return;
     }
     const { molecule, labelled } = content;
@@ -479,6 +486,5 @@ export class SightView {
     }
     this.#svg.setAttribute('viewBox', `0 0 ${this.#width} ${this.#height}`);
     this.#svg.replaceChildren(...groups);
-    this.#svg.setAttribute('aria-label', content.caption);
   }
 }

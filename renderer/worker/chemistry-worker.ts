@@ -4,8 +4,20 @@ import type { Settings } from '../../core/docket.ts';
 import { DEFAULT_SETTINGS } from '../../core/docket.ts';
 import { explainUnit } from '../../core/examine.ts';
 import { DEFAULT_LIMITS, type Entry } from '../../core/formats/format.ts';
-import { EntryTable, openSource, type ReadBytes } from './entry-source.ts';
-import { intendedFromEntries, intendedFromText, type Intended, judgeEntry, rowOf } from './judge.ts';
+import { csvHead, csvLines } from '../../core/record/csv.ts';
+import { htmlRecord } from '../../core/record/html.ts';
+import type { EntryRecord } from '../../core/record/json.ts';
+import type { RecordFigure, RecordInput, RecordMark } from '../../core/record/report.ts';
+import { chunksOf, EntryTable, openSource, type ReadBytes } from './entry-source.ts';
+import {
+  intendedFromEntries,
+  intendedFromText,
+  type Intended,
+  judgeEntry,
+  MOST_FIGURES,
+  recordOf,
+  rowOf,
+} from './judge.ts';
 import {
   type FromWorker,
   type IntentionInput,
@@ -19,6 +31,8 @@ config({ jitless: true });
 
 /** Longest time between two looks at the person's questions, ms. */
 const SLICE = 16;
+/** Files up to this size are put on record with their digest, bytes. */
+const DIGEST_LIMIT = 1024 * 1024 * 1024;
 /** How often the window hears of new rows, ms. */
 const REPORT = 80;
 /** Models kept in full for stepping back and forth. */
@@ -65,6 +79,7 @@ let settings: Settings = DEFAULT_SETTINGS;
 let files: readonly OpenedFile[] = [];
 let table = new EntryTable(read);
 let intended: Intended | null = null;
+let intendedFile: OpenedFile | null = null;
 const models = new Map<number, ReturnType<typeof judgeEntry>>();
 
 async function modelAt(index: number): Promise<ReturnType<typeof judgeEntry>> {
@@ -152,6 +167,7 @@ async function open(message: Extract<ToWorker, { type: 'open' }>): Promise<void>
   models.clear();
   table = new EntryTable(read);
   intended = null;
+  intendedFile = null;
   let given: IntentionInput | null = message.intention;
   let opened = [...message.files];
   if (given === null && opened.length > 1) {
@@ -167,6 +183,7 @@ async function open(message: Extract<ToWorker, { type: 'open' }>): Promise<void>
   if (given) {
     try {
       intended = await readIntention(given);
+      intendedFile = given.kind === 'file' ? given.file : null;
     } catch (error) {
       send({ type: 'problem', job: mine, message: words(error) });
     }
@@ -255,6 +272,7 @@ async function intend(message: Extract<ToWorker, { type: 'intend' }>): Promise<v
   }
   if (job !== mine) return;
   intended = next;
+  intendedFile = message.intention?.kind === 'file' ? message.intention.file : null;
   models.clear();
   taken(mine);
   const reporter = new Reporter(mine);
@@ -307,6 +325,79 @@ async function rawBytes(message: Extract<ToWorker, { type: 'raw' }>): Promise<vo
   send({ type: 'raw', request: message.request, bytes: list });
 }
 
+/** SHA-256 of a file, lower-case hexadecimal; null for one that is too large to be held at once. */
+async function digestOf(file: OpenedFile): Promise<string | null> {
+  if (file.size > DIGEST_LIMIT) return null;
+  const content = new Uint8Array(file.size);
+  let at = 0;
+  for await (const chunk of chunksOf(read, file)) {
+    content.set(chunk, at);
+    at += chunk.length;
+  }
+  const digest = new Uint8Array(await crypto.subtle.digest('SHA-256', content.subarray(0, at)));
+  return Array.from(digest, byte => byte.toString(16).padStart(2, '0')).join('');
+}
+
+/** Writes the record of everything that is open, in slices like the reading. */
+async function writeRecord(message: Extract<ToWorker, { type: 'record' }>): Promise<void> {
+  const { request, form, marks } = message;
+  const mine = job;
+  const pieces: string[] = form === 'csv' ? [csvHead()] : [];
+  const entries: EntryRecord[] = [];
+  const figures: RecordFigure[] = [];
+  const shownMarks: RecordMark[] = [];
+  const total = table.length;
+  let slice = performance.now();
+  let reported = slice;
+  for (let index = 0; index < total; index++) {
+    if (isStale(mine)) {
+      send({ type: 'recorded', request, bytes: null });
+      return;
+    }
+    const name = files[table.fileOf(index)]?.name ?? '';
+    const { record, figures: drawn } = recordOf(await table.entry(index), name, intended, settings);
+    if (form === 'csv') pieces.push(csvLines(record));
+    else {
+      entries.push(record);
+      if (figures.length < MOST_FIGURES) figures.push(...drawn);
+      for (const mark of marks) {
+        if (mark.index !== index) continue;
+        const unit = record.units.findIndex(({ atoms }) => atoms.join() === mark.atoms.join());
+        if (unit !== -1) shownMarks.push({ entry: record.entry, unit, mark: mark.mark, remark: mark.remark });
+      }
+    }
+    const now = performance.now();
+    if (now - slice < SLICE) continue;
+    if (now - reported > REPORT) {
+      reported = now;
+      send({
+        type: 'progress',
+        job: mine,
+        read: index,
+        total,
+        entries: index,
+        done: false,
+        cancelled: false,
+      });
+    }
+    await breathe();
+    slice = performance.now();
+  }
+  if (form === 'html') {
+    const inputs: RecordInput[] = [];
+    for (const file of files) inputs.push({ name: file.name, sha256: await digestOf(file), role: 'models' });
+    if (intendedFile) {
+      inputs.push({ name: intendedFile.name, sha256: await digestOf(intendedFile), role: 'intention' });
+    } else if (intended) inputs.push({ name: intended.name, sha256: null, role: 'intention' });
+    const { version, date } = message;
+    const title = `Handedness of ${files.map(({ name }) => name).join(', ')}`;
+    const report = { title, date, version, inputs, settings, entries, figures, marks: shownMarks };
+    for (const piece of htmlRecord(report)) pieces.push(piece);
+  }
+  send({ type: 'progress', job: mine, read: total, total, entries: total, done: true, cancelled: false });
+  send({ type: 'recorded', request, bytes: new TextEncoder().encode(pieces.join('')) });
+}
+
 function failed(error: unknown): void {
   send({ type: 'problem', job, message: words(error) });
 }
@@ -340,6 +431,9 @@ self.addEventListener('message', (event: MessageEvent<unknown>) => {
       break;
     case 'raw':
       rawBytes(message).catch(failed);
+      break;
+    case 'record':
+      writeRecord(message).catch(failed);
       break;
     case 'cancel':
       if (job === message.job) job = -1;

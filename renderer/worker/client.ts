@@ -54,6 +54,7 @@ export class ChemistryClient {
         break;
       case 'examined':
       case 'explained':
+      case 'recorded':
       case 'raw': {
         const answer = this.#waiting.get(message.request);
         this.#waiting.delete(message.request);
@@ -97,6 +98,24 @@ export class ChemistryClient {
   async explain(index: number, unit: number): Promise<{ ladder: Ladder | null; problem: string | null }> {
     const answer = await this.#ask<'explained'>(request => ({ type: 'explain', request, index, unit }));
     return { ladder: answer.ladder, problem: answer.problem };
+  }
+
+  /** The record of all entries as a document; null when it was stopped. */
+  async record(
+    form: 'html' | 'csv',
+    version: string,
+    date: string,
+    marks: Extract<ToWorker, { type: 'record' }>['marks'],
+  ): Promise<Uint8Array | null> {
+    const answer = await this.#ask<'recorded'>(request => ({
+      type: 'record',
+      request,
+      form,
+      version,
+      date,
+      marks,
+    }));
+    return answer.bytes;
   }
 
   /** The bytes of entries as they stand in their files. */

@@ -3,14 +3,19 @@ import { elementSymbol } from '../../core/chemistry/elements.ts';
 import { atomLabel, type Molecule } from '../../core/chemistry/molecule.ts';
 import type { EntryComparison, Examined } from '../../core/comparison/compare.ts';
 import { distortionOf } from '../../core/comparison/distortion.ts';
+import { identityOf } from '../../core/comparison/consistency.ts';
 import { Intention } from '../../core/comparison/intention.ts';
 import { Intentions, type IntentionSource } from '../../core/comparison/intentions.ts';
 import { parseTyped } from '../../core/comparison/typed.ts';
+import { alternativeDifferences } from '../../core/crystal/alternatives.ts';
 import { crystalRecord } from '../../core/crystal/record.ts';
 import type { Relation, Settings, Verdict } from '../../core/docket.ts';
 import { examine } from '../../core/examine.ts';
 import { DEFAULT_LIMITS, type Entry, type EntryError } from '../../core/formats/format.ts';
 import { smilesFormat } from '../../core/formats/smiles.ts';
+import { type EntryRecord, entryRecord, unreadableRecord } from '../../core/record/json.ts';
+import type { RecordFigure } from '../../core/record/report.ts';
+import { sightFigure } from '../../core/record/sight-figure.ts';
 import type { Finding, Model, Row, ShownVerdict } from './protocol.ts';
 
 /** The intentions of a job, with their structures by name for the drawing. */
@@ -48,6 +53,12 @@ export function intendedFromEntries(name: string, entries: readonly Entry[], set
   return { name, intentions: Intentions.of(sources), structures };
 }
 
+/** A judged entry with what only its record needs. */
+interface Judged {
+  readonly model: Model;
+  readonly comparison: EntryComparison | null;
+}
+
 /** Judges one entry. Never throws for what the entry holds. */
 export function judgeEntry(
   entry: Entry,
@@ -55,6 +66,66 @@ export function judgeEntry(
   intended: Intended | null,
   settings: Settings,
 ): Model {
+  return judge(entry, place, intended, settings).model;
+}
+
+/** Figures of doubtful units that a record carries at most. */
+export const MOST_FIGURES = 200;
+/** Edge of a figure in a record, px. */
+const FIGURE_SIZE = 360;
+
+/** The record of one entry, and figures of its doubtful units (of all of them where nothing was intended). */
+export function recordOf(
+  entry: Entry,
+  file: string,
+  intended: Intended | null,
+  settings: Settings,
+): { readonly record: EntryRecord; readonly figures: readonly RecordFigure[] } {
+  const { model, comparison } = judge(entry, { index: 0, file: 0 }, intended, settings);
+  const { molecule, docket } = model;
+  if (!molecule || !docket) {
+    const error = model.error ?? {
+      code: 'no-structure',
+      message: 'the entry holds no structure',
+      line: null,
+    };
+    return { record: unreadableRecord(file, entry, error), figures: [] };
+  }
+  const identity = intended ? null : identityOf(molecule, docket);
+  const record = entryRecord({
+    file,
+    entry,
+    molecule,
+    docket,
+    comparison,
+    intention: model.intention,
+    error: model.error,
+    relation: model.relation,
+    compound: identity?.compound ?? null,
+    configuration: identity?.configuration ?? null,
+    places: identity?.places ?? null,
+    distorted: model.distorted,
+    alternatives: alternativeDifferences(molecule, docket, entry.alternatives ?? [], each =>
+      examine(each, settings),
+    ),
+  });
+  const figures: RecordFigure[] = [];
+  docket.units.forEach((labelled, unit) => {
+    const { intended: wanted, verdict } = model.verdicts[unit]!;
+    if (labelled.unit.labile !== null || verdict === 'agrees' || verdict === 'open') return;
+    const source = `${file}, entry ${entry.entry}${entry.name === '' ? '' : `, ${entry.name}`}`;
+    const svg = sightFigure(molecule, labelled, { size: FIGURE_SIZE, intended: wanted, verdict, source });
+    if (svg !== null) figures.push({ file, entry: entry.entry, unit, svg });
+  });
+  return { record, figures };
+}
+
+function judge(
+  entry: Entry,
+  place: { readonly index: number; readonly file: number },
+  intended: Intended | null,
+  settings: Settings,
+): Judged {
   const base = {
     ...place,
     entry: entry.entry,
@@ -75,24 +146,19 @@ export function judgeEntry(
     crystal: null,
   };
   if (entry.error || !entry.molecule) {
-    return {
-      ...base,
-      error: entry.error ?? {
-        code: 'no-structure',
-        message: 'the entry holds no structure',
-        line: entry.line,
-      },
+    const error = entry.error ?? {
+      code: 'no-structure',
+      message: 'the entry holds no structure',
+      line: entry.line,
     };
+    return { model: { ...base, error }, comparison: null };
   }
   try {
     return judgeMolecule(entry, entry.molecule, place, intended, settings);
   } catch (error) {
     const message = error instanceof Error ? error.message : String(error);
-    return {
-      ...base,
-      molecule: entry.molecule,
-      error: { code: 'not-examined', message: `the examination failed: ${message}`, line: entry.line },
-    };
+    const failure = { code: 'not-examined', message: `the examination failed: ${message}`, line: entry.line };
+    return { model: { ...base, molecule: entry.molecule, error: failure }, comparison: null };
   }
 }
 
@@ -102,7 +168,7 @@ function judgeMolecule(
   place: { readonly index: number; readonly file: number },
   intended: Intended | null,
   settings: Settings,
-): Model {
+): Judged {
   const examineOne = (each: Molecule): Examined => ({ molecule: each, docket: examine(each, settings) });
   let examined = examineOne(molecule);
   let comparison: EntryComparison | null = null;
@@ -132,7 +198,7 @@ function judgeMolecule(
     verdicts[unit.unit] = { intended: unit.intended, verdict: unit.verdict, group: unit.group };
   }
   const structure = intended?.structures.find(each => each.name === name) ?? null;
-  return {
+  const model: Model = {
     ...place,
     entry: entry.entry,
     line: entry.line,
@@ -152,6 +218,7 @@ function judgeMolecule(
     distorted: docket.units.map(unit => distortionOf(examined.molecule, unit)),
     crystal: entry.crystal ? crystalRecord(entry.crystal, false) : null,
   };
+  return { model, comparison };
 }
 
 const VERDICT_LETTERS: Readonly<Record<Verdict, string>> = {

@@ -106,6 +106,22 @@ export const toWorker = z.discriminatedUnion('type', [
   z.strictObject({ type: z.literal('examine'), request: count, index: count }),
   z.strictObject({ type: z.literal('explain'), request: count, index: count, unit: count }),
   z.strictObject({ type: z.literal('raw'), request: count, indices: z.array(count) }),
+  /** Writes the record of all entries. */
+  z.strictObject({
+    type: z.literal('record'),
+    request: count,
+    form: z.enum(['html', 'csv']),
+    version: z.string(),
+    date: z.string(),
+    marks: z.array(
+      z.strictObject({
+        index: count,
+        atoms: z.array(count),
+        mark: z.enum(['accepted', 'rejected', 'question']),
+        remark: z.string(),
+      }),
+    ),
+  }),
   z.strictObject({ type: z.literal('cancel'), job: count }),
   z.strictObject({
     type: z.literal('bytes'),
@@ -146,6 +162,8 @@ export const fromWorker = z.discriminatedUnion('type', [
     problem: z.string().nullable(),
   }),
   z.strictObject({ type: z.literal('raw'), request: count, bytes: z.array(bytes) }),
+  /** Null when it was stopped. */
+  z.strictObject({ type: z.literal('recorded'), request: count, bytes: bytes.nullable() }),
   /** Something a person must know that belongs to no entry: a file that cannot be read. */
   z.strictObject({ type: z.literal('problem'), job: count, message: z.string() }),
 ]);

@@ -5,6 +5,7 @@ import { join } from 'node:path';
 import type { Browser, Page } from 'playwright-core';
 import { afterAll, afterEach, beforeAll, beforeEach, describe, expect, test } from 'vitest';
 import { demoFiles, launchBrowser, openWindow, outputFolder, type OpenedWindow } from './launch.ts';
+import { SHARED_DATA_ABSENT, sharedData } from '../shared.ts';
 import { atRest, picture, readDial, runOf, violations } from './window.ts';
 
 let browser: Browser;
@@ -210,6 +211,109 @@ describe('opening', () => {
     await page.keyboard.press(']');
     await expect.poll(() => page.locator('.head-entry').textContent()).toContain('entry 2');
     await expect.poll(() => page.getByRole('option', { selected: true }).textContent()).toContain('C4');
+  });
+});
+
+describe('what leaves the window', () => {
+  async function saved(page: Page, words: string): Promise<{ name: string; text: string }> {
+    const download = page.waitForEvent('download');
+    await page.keyboard.press('Control+k');
+    await page.getByRole('combobox', { name: 'Find a command' }).fill(words);
+    await page.keyboard.press('Enter');
+    const file = await download;
+    return { name: file.suggestedFilename(), text: readFileSync(await file.path(), 'utf8') };
+  }
+
+  test('the record names input, verdicts, the mark that was made, and what it does not establish', async () => {
+    const page = await open(...demoFiles());
+    await page.getByRole('option').first().waitFor();
+    await page.keyboard.press('d');
+    await page.getByRole('option', { selected: true }).filter({ hasText: 'inverted' }).waitFor();
+    await page.keyboard.press('x');
+    await page.keyboard.press('r');
+    await page.keyboard.type('to be built again');
+    await page.keyboard.press('Enter');
+    const { name, text } = await saved(page, 'save the record');
+    expect(name).toBe('lantern-models-record.html');
+    expect(text).toContain('lantern-models.sdf');
+    expect(text).toMatch(/SHA-256 <code>[0-9a-f]{64}<\/code>/u);
+    expect(text).toContain('inverted');
+    expect(text).toContain('to be built again');
+    expect(text).toContain('no proof of the absolute configuration');
+    expect(text).toContain('<svg');
+    const table = await saved(page, 'record as a table');
+    expect(table.name).toBe('lantern-models-record.csv');
+    // A heading and five units for each of three entries.
+    expect(table.text.trim().split('\r\n')).toHaveLength(16);
+  });
+
+  test('entries that agree are saved byte for byte', async () => {
+    const page = await open(...demoFiles());
+    await page.getByRole('option').first().waitFor();
+    const { name, text } = await saved(page, 'entries that agree');
+    expect(name).toBe('lantern-models-agreeing.sdf');
+    expect(text).toBe(entries[0]);
+    const other = await saved(page, 'inverted entries');
+    expect(other.text).toBe(entries[1]);
+  });
+
+  test('the sight is saved as a figure', async () => {
+    const page = await open(...demoFiles());
+    await page.getByRole('option').first().waitFor();
+    const { name, text } = await saved(page, 'figure');
+    expect(name).toBe('LANTERN-017-model-1-C2.svg');
+    expect(text).toMatch(/^<svg /u);
+  });
+});
+
+describe('other kinds of model', () => {
+  const macromolecule = sharedData('macromolecule/5dpv.pdb');
+  test.skipIf(macromolecule === null)(
+    `a macromolecule${macromolecule ? '' : `: ${SHARED_DATA_ABSENT}`}`,
+    async () => {
+      const page = await open(macromolecule!);
+      await page.getByRole('option').first().waitFor({ timeout: 30_000 });
+      await atRest(page);
+      expect(await page.getByRole('option').first().textContent()).toMatch(/A\/GLN\/127 CA/u);
+      expect(runOf(await readDial(page))).toBe('anticlockwise');
+      await page.getByRole('listbox').focus();
+      await page.keyboard.press('End');
+      await page.getByRole('option', { selected: true }).waitFor();
+      await atRest(page);
+      await picture(page, 'macromolecule-light');
+      expect(await violations(page)).toEqual([]);
+    },
+  );
+
+  const crystal = sharedData('small-molecule-cif/cod-2224874.cif');
+  test.skipIf(crystal === null)(`a crystal${crystal ? '' : `: ${SHARED_DATA_ABSENT}`}`, async () => {
+    const page = await open(crystal!);
+    await page.getByText('P -4 c 2').waitFor();
+    await page.getByText('Absolute structure').waitFor();
+    await picture(page, 'crystal-light');
+    expect(await violations(page)).toEqual([]);
+  });
+
+  const suite = sharedData('cip/suite-3d.sdf');
+  // Letters as the suite publishes them.
+  test.skipIf(suite === null).each([
+    ['VS010', 'helix', 'P', /seen along the helix: from the front end to the rear it winds clockwise, P/u],
+    ['VS079', 'allene', 'M', /seen end-on: front 1 to rear 1′ runs anticlockwise by the shorter way, M/u],
+    ['VS023', 'axis', 'M', /seen end-on: front 1 to rear 1′ runs anticlockwise by the shorter way, M/u],
+  ])('%s, a unit with a sight of its own: %s', async (name, kind, letter, words) => {
+    const page = await open(suite!);
+    await page.getByRole('navigation', { name: 'Ledger' }).waitFor();
+    await page.keyboard.press('l');
+    await page.getByRole('searchbox').fill(name);
+    await page.getByRole('row').filter({ hasText: name }).click();
+    await page.getByRole('option').filter({ hasText: letter }).first().waitFor();
+    await page.getByRole('grid').focus();
+    await page.keyboard.press('l');
+    await atRest(page);
+    const dial = await readDial(page);
+    expect(dial.sweep).toBe(letter === 'P' ? 'clockwise' : 'anticlockwise');
+    expect(dial.caption).toMatch(words);
+    await picture(page, `${kind}-light`);
   });
 });
 

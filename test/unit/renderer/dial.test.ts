@@ -9,6 +9,8 @@ import { DEFAULT_LIMITS, type Entry } from '../../../core/formats/format.ts';
 import { sdfFormat } from '../../../core/formats/sdf.ts';
 import { type SightFrame, sightFrame, type Vector } from '../../../core/record/sight-frame.ts';
 import { caption } from '../../../renderer/caption.ts';
+import { frameOf } from '../../../renderer/sight/frames.ts';
+import { SHARED_DATA_ABSENT, sharedData } from '../../shared.ts';
 import { dialOf } from '../../../renderer/sight/dial.ts';
 
 const path = fileURLToPath(new URL('../../../assets/demo/lantern-models.sdf', import.meta.url));
@@ -89,6 +91,34 @@ describe('the dial', () => {
     expect(flat[0]).toMatchObject({ shape: 'bar', sweep: null });
   });
 });
+
+const suite = sharedData('cip/suite-3d.sdf');
+
+describe.skipIf(suite === null)(
+  `the published suite${suite === null ? `: ${SHARED_DATA_ABSENT}` : ''}`,
+  () => {
+    test('every dial runs as its letter says, whatever the kind of unit', () => {
+      const kinds = new Map<string, number>();
+      for (const text of readFileSync(suite!, 'utf8').split(/(?<=\$\$\$\$\r?\n)/u)) {
+        if (text.trim() === '') continue;
+        const raw = { entry: 1, line: 1, bytes: new TextEncoder().encode(text) };
+        const [entry] = sdfFormat.parse(raw, DEFAULT_LIMITS);
+        const molecule = entry?.molecule;
+        if (!molecule) continue;
+        for (const labelled of examine(molecule).units) {
+          const { descriptor, unit } = labelled;
+          if (descriptor === null || /^[EZez]$/u.test(descriptor)) continue;
+          const dial = dialOf(molecule, labelled, frameOf(molecule, labelled)!);
+          const where = `${entry.name} ${unit.kind} ${unit.atoms.map(atom => atom + 1).join('-')}`;
+          expect(dial.sweep?.clockwise, where).toBe(/^[RrPp]$/u.test(descriptor));
+          kinds.set(unit.kind, (kinds.get(unit.kind) ?? 0) + 1);
+        }
+      }
+      expect(kinds.get('centre')).toBeGreaterThan(300);
+      for (const kind of ['cumulene', 'axis', 'helix']) expect(kinds.get(kind)).toBeGreaterThan(0);
+    });
+  },
+);
 
 describe('the caption', () => {
   test('says what one looks at, what it amounts to, and what was intended', () => {
