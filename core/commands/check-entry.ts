@@ -5,6 +5,7 @@ import { distortionOf } from '../comparison/distortion.ts';
 import type { Intentions } from '../comparison/intentions.ts';
 import type { Molecule } from '../chemistry/molecule.ts';
 import { alternativeDifferences } from '../crystal/alternatives.ts';
+import { compareIndependent } from '../crystal/independent.ts';
 import type { Docket, Settings } from '../docket.ts';
 import { examine } from '../examine.ts';
 import type { Entry, Format, Limits, RawEntry } from '../formats/format.ts';
@@ -112,6 +113,12 @@ function checkMolecule(
     configuration: identity?.configuration ?? null,
     places: identity?.places ?? null,
     enantiopure: options.enantiopure ?? false,
+    independent:
+      entry.crystal && !entry.crystal.macromolecule
+        ? compareIndependent(molecule, entry.crystal.operators, entry.crystal.cell, each =>
+            examineLigands(each, options),
+          )
+        : [],
     alternatives: alternativeDifferences(examined.molecule, examined.docket, entry.alternatives ?? [], each =>
       examineLigands(each, options),
     ),

@@ -32,10 +32,12 @@ const REACH = 3;
 /** Rounding of decimal figures in binary. */
 const ROUNDING = 1e-9;
 
+/** A value with its u as figures are written: 0.02(4), -0.042(13); u has two digits where the first is a 1. */
 function figure(value: number, u: number): string {
-  const digits = Math.min(6, Math.max(0, -Math.floor(Math.log10(u) + ROUNDING)));
-  const unit = Math.round(u * 10 ** digits);
-  return `${value.toFixed(digits)}(${unit})`;
+  let digits = Math.max(0, -Math.floor(Math.log10(u) + ROUNDING));
+  const leading = u * 10 ** digits;
+  if (leading < 2 - ROUNDING && Math.abs(leading - Math.round(leading)) > 1e-6) digits++;
+  return `${value.toFixed(digits)}(${Math.round(u * 10 ** digits)})`;
 }
 
 function usable(parameter: Measured | null): (Measured & { uncertainty: number }) | null {

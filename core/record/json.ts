@@ -4,6 +4,7 @@ import { atomLabel, IMPLICIT_HYDROGEN, LONE_PAIR, type Molecule } from '../chemi
 import { checkResidues, type FindingKind } from '../biopolymer/checks.ts';
 import { type CrystalRecord, crystalRecord } from '../crystal/record.ts';
 import type { AlternativeDifference } from '../crystal/alternatives.ts';
+import type { IndependentRelation } from '../crystal/independent.ts';
 import type { EntryComparison, UnitVerdict } from '../comparison/compare.ts';
 import type { Descriptor, Docket, LabelledUnit, Relation, RuleName, Verdict } from '../docket.ts';
 import type { Entry } from '../formats/format.ts';
@@ -49,6 +50,8 @@ export interface UnitRecord {
   readonly verdict: Verdict | null;
   /** 1-based atoms of the unit in the intention. */
   readonly intendedAtoms?: readonly number[];
+  /** What the intention calls these atoms. */
+  readonly intendedLabels?: readonly string[];
   /** "&1", "o2": judged as one with the other members. */
   readonly group?: string;
   /** The same for units whose surroundings are alike, stereochemistry aside; where nothing was intended. */
@@ -109,6 +112,8 @@ export interface EntryRecord {
   readonly residueFindings?: readonly ResidueFindingRecord[];
   /** Units whose handedness differs in an alternative of a disordered part. */
   readonly alternatives?: readonly AlternativeDifference[];
+  /** Of a crystal with several independent molecules of one compound. */
+  readonly independent?: readonly IndependentRelation[];
   readonly warnings: readonly string[];
   readonly error: ErrorRecord | null;
 }
@@ -132,6 +137,7 @@ export interface EntrySource {
   /** Whether the user states that the sample of a crystal is enantiopure. */
   readonly enantiopure?: boolean;
   readonly alternatives?: readonly AlternativeDifference[];
+  readonly independent?: readonly IndependentRelation[];
 }
 
 function round(value: number | null, digits: number): number | null {
@@ -186,6 +192,7 @@ export function entryRecord(source: EntrySource): EntryRecord {
     ...(source.configuration !== null && { configuration: source.configuration }),
     ...(crystal && { crystal }),
     ...(findings.length > 0 && { residueFindings: findings }),
+    ...(source.independent && source.independent.length > 0 && { independent: source.independent }),
     ...(source.alternatives && source.alternatives.length > 0 && { alternatives: source.alternatives }),
     warnings: [
       ...new Set([
@@ -194,6 +201,7 @@ export function entryRecord(source: EntrySource): EntryRecord {
         ...(comparison?.warnings ?? []),
         ...findings.map(({ message }) => message),
         ...(source.alternatives ?? []).map(({ message }) => message),
+        ...(source.independent ?? []).map(({ message }) => message),
       ]),
     ],
     error: source.error,
@@ -308,6 +316,7 @@ function unitRecord(
     intended: verdict?.intended ?? null,
     verdict: verdict?.verdict ?? null,
     ...(verdict?.intendedAtoms && { intendedAtoms: verdict.intendedAtoms.map(atom => atom + 1) }),
+    ...(verdict?.intendedLabels && { intendedLabels: verdict.intendedLabels }),
     ...(verdict?.group && { group: verdict.group }),
     ...(place !== undefined && { place }),
     ...(warnings.length > 0 && { warnings }),
@@ -331,6 +340,7 @@ function absentRecord(molecule: Molecule, verdict: UnitVerdict): UnitRecord {
     intended: verdict.intended,
     verdict: verdict.verdict,
     ...(verdict.intendedAtoms && { intendedAtoms: verdict.intendedAtoms.map(atom => atom + 1) }),
+    ...(verdict.intendedLabels && { intendedLabels: verdict.intendedLabels }),
     ...(verdict.group && { group: verdict.group }),
   };
 }
