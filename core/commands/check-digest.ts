@@ -52,7 +52,7 @@ export function digestOf(record: EntryRecord, withUnits: boolean): EntryDigest {
           .filter(({ labile }) => labile === undefined)
           .map(unit => ({
             key: unit.intendedAtoms?.join('-') ?? unit.place ?? unit.atoms.join('-'),
-            label: unit.labels.join('='),
+            label: (unit.intendedLabels ?? unit.labels).join('='),
             firmness: unit.firmness,
             verdict: unit.verdict,
             distorted: unit.distorted !== undefined,

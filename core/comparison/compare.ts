@@ -1,5 +1,6 @@
 /** Comparison of one entry with its intention: molecules matched one to one, a verdict for each unit, a relation for each molecule. */
-import type { Molecule } from '../chemistry/molecule.ts';
+import { elementSymbol } from '../chemistry/elements.ts';
+import { atomLabel, type Molecule } from '../chemistry/molecule.ts';
 import type { Descriptor, Docket, Relation, Verdict } from '../docket.ts';
 import type { StereoUnit, UnitKind } from '../perception/unit.ts';
 import { supplyBonding } from './bonding.ts';
@@ -43,6 +44,8 @@ export interface UnitVerdict {
   readonly intended: Descriptor | null;
   /** Atoms (0-based) of the unit in the intention. */
   readonly intendedAtoms: readonly number[] | null;
+  /** What the intention calls these atoms. */
+  readonly intendedLabels: readonly string[] | null;
   /** Atoms (0-based) of the unit in the model as far as they are mapped; for units without a docket entry. */
   readonly modelAtoms: readonly number[] | null;
   /** "&1", "o2": the stereo group with which it is judged. */
@@ -126,6 +129,7 @@ export function openUnit(unit: number, kind: UnitKind): UnitVerdict {
     intendedUnit: null,
     intended: null,
     intendedAtoms: null,
+    intendedLabels: null,
     modelAtoms: null,
     group: null,
   };
@@ -302,6 +306,7 @@ function judgeAsItStands(
         intendedUnit: unit.index,
         intended: unit.descriptor,
         intendedAtoms: unit.unit.atoms,
+        intendedLabels: unit.unit.atoms.map(atom => atomLabel(intention.molecule, atom, elementSymbol)),
         modelAtoms: atomsOf(u),
         group: unit.group === -1 ? null : intended.groupNames[unit.group]!,
       });

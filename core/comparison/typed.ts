@@ -106,6 +106,7 @@ export function compareTyped(examined: Examined, typed: readonly TypedUnit[]): E
       intendedUnit: null,
       intended: descriptor,
       intendedAtoms: null,
+      intendedLabels: names,
       modelAtoms: atoms,
       group: null,
     };

@@ -14,6 +14,13 @@ function descriptorText(unit: UnitRecord): string {
   return unit.state === 'clear' ? 'no letter' : unit.state;
 }
 
+/** The atoms of a unit; those of the intention where the model lacks them. */
+function nameOf(unit: UnitRecord): string {
+  const labels = unit.labels.join('=');
+  if (labels === '') return `${unit.intendedLabels?.join('=') ?? 'a unit'} of the intention`;
+  return unit.residue ? `${unit.residue} ${labels}` : labels;
+}
+
 function measureText(unit: UnitRecord): string {
   const parts: string[] = [];
   if (unit.signedVolume !== null) {
@@ -59,7 +66,7 @@ export function entryText(record: EntryRecord): string {
     if (relation !== null) lines.push(`  molecule ${id}, ${formula}: ${relation}`);
   }
   const rows = record.units.map(unit => [
-    unit.residue ? `${unit.residue} ${unit.labels.join('=')}` : unit.labels.join('=') || 'not in the model',
+    nameOf(unit),
     unit.kind,
     descriptorText(unit),
     measureText(unit),
