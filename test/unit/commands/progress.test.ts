@@ -3,7 +3,11 @@ import type { CommandIo } from '../../../core/commands/io.ts';
 import { duration, Progress } from '../../../core/commands/progress.ts';
 
 /** A terminal whose clock is turned by hand. */
-function terminal(isTerminal: boolean): { io: CommandIo; turn(milliseconds: number): void; shown(): string } {
+function terminal(isTerminal: boolean): {
+  io: CommandIo;
+  turn: (milliseconds: number) => void;
+  shown: () => string;
+} {
   let now = 1000;
   let shown = '';
   const io: CommandIo = {
