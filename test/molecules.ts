@@ -193,7 +193,11 @@ function moleculeFrom(random: () => number, size: number, rings: number): Molecu
     isotope,
     hydrogens: free,
   }));
-  const plain = buildMolecule({ atoms: inputs, bonds });
+  return statedAtRandom(buildMolecule({ atoms: inputs, bonds }), random);
+}
+
+/** The molecule with a configuration stated at random for every carbon of four ligands and every double bond. */
+export function statedAtRandom(plain: Molecule, random: () => number): Molecule {
   const stated: StatedStereo[] = [];
   for (let i = 0; i < plain.atomCount; i++) {
     const ligands = [...plain.neighbours.subarray(plain.neighbourStart[i], plain.neighbourStart[i + 1])];
@@ -206,8 +210,10 @@ function moleculeFrom(random: () => number, size: number, rings: number): Molecu
       turn: random() < 0.5 ? 'clockwise' : 'anticlockwise',
     });
   }
-  for (const [a, b, order] of bonds) {
-    if (order !== 2) continue;
+  for (let bond = 0; bond < plain.bondCount; bond++) {
+    if (plain.bondOrders[bond] !== 2) continue;
+    const a = plain.bondAtoms[2 * bond]!;
+    const b = plain.bondAtoms[2 * bond + 1]!;
     const x = side(plain, a, b);
     const y = side(plain, b, a);
     if (x < 0 || y < 0) continue;
@@ -219,6 +225,50 @@ function moleculeFrom(random: () => number, size: number, rings: number): Molecu
     });
   }
   return { ...plain, stated };
+}
+
+/** Random molecules of two or three like branches on one carbon, so that rankings come to the rules beyond the first; rings of the branches closed through the core now and then. */
+export const symmetricMolecule: fc.Arbitrary<Molecule> = fc
+  .record({ seed: fc.nat(), size: fc.integer({ min: 2, max: 6 }), copies: fc.integer({ min: 2, max: 3 }) })
+  .map(({ seed, size, copies }) => symmetricFrom(seeded(seed), size, copies));
+
+function symmetricFrom(random: () => number, size: number, copies: number): Molecule {
+  const pick = <T>(list: readonly T[]): T => list[Math.floor(random() * list.length)]!;
+  const branch: { element: number; free: number }[] = [{ element: 6, free: 3 }];
+  const inner: [number, number, BondOrder][] = [];
+  while (branch.length < size) {
+    const open = branch.flatMap((atom, i) => (atom.free > 0 ? [i] : []));
+    if (open.length === 0) break;
+    const parent = pick(open);
+    const [element, valence] = pick(VALENCES);
+    const double = valence > 1 && branch[parent]!.free > 1 && random() < 0.25;
+    branch[parent]!.free -= double ? 2 : 1;
+    inner.push([parent, branch.length, double ? 2 : 1]);
+    branch.push({ element, free: valence - (double ? 2 : 1) });
+  }
+  const atoms: AtomInput[] = [{ element: 6, hydrogens: 4 - copies }];
+  const bonds: [number, number, BondOrder][] = [];
+  for (let copy = 0; copy < copies; copy++) {
+    const first = atoms.length;
+    atoms.push(...branch.map(({ element, free }) => ({ element, hydrogens: free })));
+    bonds.push(
+      [0, first, 1],
+      ...inner.map(([a, b, order]) => [first + a, first + b, order] as [number, number, BondOrder]),
+    );
+  }
+  // A heteroatom on the core, or the last carbons of two branches joined.
+  const last = branch.findLastIndex(({ element, free }) => element === 6 && free > 0);
+  if (last > 0 && random() < 0.4) {
+    const [one, other] = [1 + last, 1 + branch.length + last];
+    bonds.push([one, other, 1]);
+    for (const atom of [one, other]) atoms[atom] = { element: 6, hydrogens: branch[last]!.free - 1 };
+  }
+  if (random() < 0.7) {
+    atoms[0] = { element: 6, hydrogens: 3 - copies };
+    bonds.push([0, atoms.length, 1]);
+    atoms.push({ element: pick([9, 17, 35]) });
+  }
+  return statedAtRandom(buildMolecule({ atoms, bonds }), random);
 }
 
 function side(molecule: Molecule, atom: number, other: number): number {

@@ -110,19 +110,6 @@ export class Digraph {
     this.childCount[node] = this.count - this.firstChild[node];
   }
 
-  /** The number of edges between two nodes of the tree. */
-  distance(first: number, second: number): number {
-    let a = first;
-    let b = second;
-    let steps = 0;
-    while (a !== b) {
-      if (this.depth[a]! >= this.depth[b]!) a = this.parent[a]!;
-      else b = this.parent[b]!;
-      steps++;
-    }
-    return steps;
-  }
-
   /** The node through which a ligand of the atom at `node` is reached: its parent, a real child or a ring duplicate; -1 if there is none. */
   ligandNode(node: number, ligandAtom: number): number {
     const parent = this.parent[node]!;

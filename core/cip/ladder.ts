@@ -138,7 +138,7 @@ function textWriter(view: Branches, rule: RuleName): Writer {
     case '1a':
       return symbol;
     case '1b':
-      return (node, depth) => `${symbol(node)} at ${rootDistance(digraph, node, depth, view.root)}`;
+      return (node, depth) => `${symbol(node)} at ${rootDistance(digraph, node, depth)}`;
     case '2':
       return node => `${symbol(node)} ${Number(nodeMass(digraph, node).toFixed(3))}`;
     case '4b':

@@ -5,17 +5,20 @@
  * The root distance of a ring duplicate is the sphere of the atom it duplicates; of a multiple-bond duplicate the
  * sphere of the atom it is attached to, so that the choice of a Kekulé structure has no influence; of any other
  * node its own sphere.
+ *
+ * The root is that of the digraph, also while an auxiliary descriptor is determined in it: there is one digraph and one
+ * root (P-92.1.4.1), and "closer to the root" of P-92.2.2 means it. No entry of the 2018 suite depends on this.
  */
 import { type Digraph, Nature } from './digraph.ts';
 import type { NodeRule } from './rule.ts';
 
-/** Root distance of a node that lies in sphere `depth` of the digraph seen from `root`. */
-export function rootDistance(digraph: Digraph, node: number, depth: number, root: number): number {
+/** Root distance of a node that lies in sphere `depth` as it is seen now. */
+export function rootDistance(digraph: Digraph, node: number, depth: number): number {
   switch (digraph.nature[node]) {
     case Nature.ringDuplicate:
-      return digraph.distance(root, digraph.original[node]!);
+      return digraph.depth[digraph.original[node]!]!;
     case Nature.bondDuplicate:
-      return depth - 1;
+      return digraph.depth[digraph.parent[node]!]!;
     default:
       return depth;
   }
@@ -23,5 +26,5 @@ export function rootDistance(digraph: Digraph, node: number, depth: number, root
 
 export const rule1b: NodeRule = {
   name: '1b',
-  key: (digraph, node, depth, root) => -rootDistance(digraph, node, depth, root),
+  key: (digraph, node, depth) => -rootDistance(digraph, node, depth),
 };

@@ -7,6 +7,7 @@ import {
   type Molecule,
 } from '../../../core/chemistry/molecule.ts';
 import { examine } from '../../../core/examine.ts';
+import { parseSmiles } from '../../../core/formats/smiles.ts';
 
 /** C–C of cubane, Å (E. B. Fleischer, J. Am. Chem. Soc. 1964, 86, 3889: 1.551; from memory). */
 const EDGE = 1.551;
@@ -65,4 +66,13 @@ describe('cubanes', () => {
       expect(letters(other)).toEqual(swapped);
     },
   );
+});
+
+describe('Rule 1b in auxiliary descriptors', () => {
+  it('counts the root distance from the root of the digraph (P-92.2.2; test/reference/DIFFERENCES.md)', () => {
+    // Its two ring branches differ by Rule 5 alone; which is R rests on duplicates of the root beside duplicates of nearer atoms.
+    const { molecule } = parseSmiles('F[C@@H]1[C@@H]2[C@@H]3[C@@H]2[C@H]13');
+    const unit = examine(molecule).units.find(({ unit: { atoms } }) => atoms[0] === 1);
+    expect(unit?.descriptor).toBe('s');
+  });
 });
