@@ -237,6 +237,12 @@ export function matchWhole(intended: IntendedFragment, model: Fragment): MatchRe
   const level = isotopic ? 'isotopic' : 'bonded';
   if (bonded && !doubtful && balanced) {
     const warnings: string[] = [];
+    const planar = unexpectedlyPlanar(intended.fragment, model, bonded);
+    if (planar.length > 0) {
+      warnings.push(
+        `the geometry at ${planar.join(', ')} is that of multiple bonds, which neither file nor intention has`,
+      );
+    }
     if (!isotopic) warnings.push('the isotopes of the model are not those of the intention');
     if (!sameProtons(intended.fragment, model, bonded)) {
       warnings.push('the protonation or tautomer of the model is not that of the intention');
@@ -249,6 +255,21 @@ export function matchWhole(intended: IntendedFragment, model: Fragment): MatchRe
   const skeletal = bonded ?? isomorphism(intended, model, colours, 'skeletal');
   if (!skeletal) return { match: null, difference: firstDifference(intended.fragment, model) };
   return matchSkeletons(intended, model, skeletal, doubtful, balanced);
+}
+
+/**
+ * Carbons that a model without hydrogens and multiple bonds shows as unsaturated though the intention has them saturated:
+ * its bond orders may be missing and the compound another one.
+ */
+function unexpectedlyPlanar(intended: Fragment, model: Fragment, image: Int32Array): string[] {
+  if (model.molecule.dimension !== 3 || hasMultipleBonds(model) || listsHydrogens(model)) return [];
+  const labels: string[] = [];
+  for (let v = 0; v < intended.count; v++) {
+    if (intended.elements[v] === 6 && intended.pi[v] === 0 && geometricPi(model, image[v]!) === 1) {
+      labels.push(labelOf(model, image[v]!));
+    }
+  }
+  return labels;
 }
 
 function hasAttachmentPoints(fragment: Fragment): boolean {

@@ -94,7 +94,14 @@ describe('found against intended over embedded molecules', () => {
                 : Math.floor(random() * (all + 1));
         const spoiling: Spoiling = {
           withoutHydrogens: done % 3 === 0,
-          orders: random() < 0.25 ? 'single' : random() < 0.35 ? 'aromatic' : 'as written',
+          orders:
+            random() < 0.25
+              ? 'single'
+              : random() < 0.35
+                ? 'aromatic'
+                : random() < 0.25
+                  ? 'wrong'
+                  : 'as written',
           protonatedOtherwise: random() < 0.3,
         };
         done++;
@@ -150,4 +157,35 @@ describe('found against intended over embedded molecules', () => {
       expect(differing).toEqual([]);
     },
   );
+});
+
+describe('compounds near to the intended one', () => {
+  it.each([
+    ['C[C@H](N)C1CCCCC1', 'C[C@H](N)c1ccccc1'],
+    ['CC(C)[C@@H](O)CC(C)CN', 'CC(C)[C@@H](O)C=C(C)CN'],
+  ])(
+    '%s, written without bond orders and hydrogens, is told from %s by its geometry',
+    async (found, intended) => {
+      const built = embed(parseSmiles(found).molecule, await loadTables(), { seed: 3 });
+      if (!built.ok) throw new Error(built.reason);
+      const spoiling: Spoiling = { withoutHydrogens: true, orders: 'single', protonatedOtherwise: false };
+      const { molecule } = spoil(built.molecule, spoiling, randomNumbers(1));
+      const wanted = parseSmiles(intended).molecule;
+      const itself = parseSmiles(found).molecule;
+      const relation = (each: Molecule): string =>
+        compareEntry(examined(molecule), new Intention('', each, examine(each)), examined).relation;
+      expect(relation(itself)).toBe('same');
+      expect(relation(wanted)).toBe('other compound');
+    },
+  );
+
+  it('warns where the geometry shows multiple bonds that neither file nor intention has', async () => {
+    const built = embed(parseSmiles('O=C1CC[C@H](C)CN1').molecule, await loadTables(), { seed: 3 });
+    if (!built.ok) throw new Error(built.reason);
+    const spoiling: Spoiling = { withoutHydrogens: true, orders: 'single', protonatedOtherwise: false };
+    const { molecule } = spoil(built.molecule, spoiling, randomNumbers(1));
+    const intended = parseSmiles('OC1CC[C@H](C)CN1').molecule;
+    const result = compareEntry(examined(molecule), new Intention('', intended, examine(intended)), examined);
+    expect(result.warnings.join()).toMatch(/the geometry at C\d+ is that of multiple bonds/);
+  });
 });

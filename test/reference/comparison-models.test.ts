@@ -107,7 +107,14 @@ describe('found against intended over published models', () => {
         const intended = notation(molecule, docket, wrong);
         const spoiling: Spoiling = {
           withoutHydrogens: random() < 1 / 3,
-          orders: random() < 0.25 ? 'single' : random() < 0.3 ? 'aromatic' : 'as written',
+          orders:
+            random() < 0.25
+              ? 'single'
+              : random() < 0.3
+                ? 'aromatic'
+                : random() < 0.3
+                  ? 'wrong'
+                  : 'as written',
           protonatedOtherwise: random() < 0.3,
         };
         const spoiled = spoil(molecule, spoiling, random);

@@ -26,8 +26,11 @@ export function shuffled(count: number, random: () => number): number[] {
 
 export interface Spoiling {
   readonly withoutHydrogens: boolean;
-  /** `as written`; `single`: every bond written as single; `aromatic`: alternating rings written with bond type 4. */
-  readonly orders: 'as written' | 'single' | 'aromatic';
+  /**
+   * `as written`; `single`: every bond written as single; `wrong`: every other multiple bond written as single, with the
+   * hydrogens left out; `aromatic`: alternating rings written with bond type 4.
+   */
+  readonly orders: 'as written' | 'single' | 'wrong' | 'aromatic';
   readonly protonatedOtherwise: boolean;
 }
 
@@ -106,7 +109,7 @@ export function spoil(
       if (isAmine(molecule, atom)) charges[atom] = 1;
     }
   }
-  if (spoiling.withoutHydrogens) {
+  if (spoiling.withoutHydrogens || spoiling.orders === 'wrong') {
     for (let atom = 0; atom < molecule.atomCount; atom++) {
       if (molecule.elements[atom] === 1 && molecule.isotopes[atom] === 0) dropped.add(atom);
     }
@@ -115,11 +118,15 @@ export function spoil(
   const place = new Map(order.map((old, now) => [old, now]));
   const aromatic = spoiling.orders === 'aromatic' ? alternatingBonds(molecule) : null;
   const bonds: string[] = [];
+  let multiple = 0;
   for (let b = 0; b < molecule.bondCount; b++) {
     const first = place.get(molecule.bondAtoms[2 * b]!);
     const second = place.get(molecule.bondAtoms[2 * b + 1]!);
     if (first === undefined || second === undefined) continue;
-    const type = spoiling.orders === 'single' ? 1 : aromatic?.has(b) ? 4 : molecule.bondOrders[b]!;
+    const order = molecule.bondOrders[b]!;
+    const spoilt =
+      spoiling.orders === 'single' || (spoiling.orders === 'wrong' && order > 1 && multiple++ % 2 === 0);
+    const type = spoilt ? 1 : aromatic?.has(b) ? 4 : order;
     bonds.push([first + 1, second + 1, type, 0].map(value => String(value).padStart(3)).join(''));
   }
   const count = (value: number): string => String(value).padStart(3);
@@ -138,7 +145,7 @@ export function spoil(
   lines.push(...bonds);
   order.forEach((atom, now) => {
     // Without bond orders the file knows of no charges either.
-    if (charges[atom] !== 0 && spoiling.orders !== 'single')
+    if (charges[atom] !== 0 && spoiling.orders !== 'single' && spoiling.orders !== 'wrong')
       lines.push(`M  CHG  1 ${count(now + 1)} ${count(charges[atom]!)}`);
     if (molecule.isotopes[atom] !== 0)
       lines.push(`M  ISO  1 ${count(now + 1)} ${count(molecule.isotopes[atom]!)}`);
