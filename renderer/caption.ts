@@ -10,7 +10,7 @@ export type Side = 'sight' | 'far' | 'free';
 
 /** The name of a unit: the labels of its atoms. */
 export function unitName(molecule: Molecule, labelled: LabelledUnit): string {
-  const joint = labelled.unit.kind === 'centre' ? ' ' : '=';
+  const joint = labelled.unit.kind === 'double-bond' ? '=' : '–';
   const residue = residueName(molecule, labelled.unit.atoms[0] ?? -1);
   return `${residue === '' ? '' : `${residue} `}${atomNames(molecule, labelled, joint)}`;
 }

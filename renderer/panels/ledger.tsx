@@ -141,7 +141,7 @@ export function LedgerTable(): ReactElement {
   useEffect(() => {
     if (at >= 0) virtual.scrollToIndex(at, { align: 'auto' });
     // Only the choice moves the table, not its growth.
-  }, [current]); // oxlint-disable-line
+  }, [current, words, column, descending, doubtfulOnly]); // oxlint-disable-line
 
   const onKey = (event: KeyboardEvent): void => {
     const moves: Record<string, number> = {

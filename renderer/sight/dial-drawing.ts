@@ -191,11 +191,19 @@ function sweepArc(from: number, turn: number, cx: number, cy: number, r: number)
   const neck = end - sign * (15 / r);
   const point = (angle: number, radius: number): string =>
     `${(cx + radius * Math.cos(angle)).toFixed(2)} ${(cy - radius * Math.sin(angle)).toFixed(2)}`;
-  const large = Math.abs(turn) > Math.PI ? 1 : 0;
-  const flag = turn < 0 ? 1 : 0;
+  // Drawn inwards where it goes nearly all the way round, so that the end does not run into the beginning.
+  const inward = Math.abs(turn) > 5 ? 16 : 0;
+  const radiusAt = (t: number): number => r - inward * t;
+  const steps = Math.max(2, Math.ceil(Math.abs(neck - start) / 0.08));
+  const way: string[] = [];
+  for (let k = 0; k <= steps; k++) {
+    const t = k / steps;
+    way.push(`${k === 0 ? 'M' : 'L'} ${point(start + t * (neck - start), radiusAt(t))}`);
+  }
+  const tip = radiusAt(1);
   return [
     element('path', {
-      d: `M ${point(start, r)} A ${r.toFixed(2)} ${r.toFixed(2)} 0 ${large} ${flag} ${point(neck, r)}`,
+      d: way.join(' '),
       class: 'dial-sweep',
       'data-turn': turn < 0 ? 'clockwise' : 'anticlockwise',
     }),
@@ -206,7 +214,7 @@ function sweepArc(from: number, turn: number, cx: number, cy: number, r: number)
       class: 'dial-head',
     }),
     element('path', {
-      d: `M ${point(end, r)} L ${point(neck, r + 6.5)} L ${point(neck, r - 6.5)} Z`,
+      d: `M ${point(end, tip)} L ${point(neck, tip + 6.5)} L ${point(neck, tip - 6.5)} Z`,
       class: 'dial-head',
     }),
   ];

@@ -21,12 +21,12 @@ export interface Ball {
   readonly strength: number;
 }
 
-/** One rod between two points, in one colour. */
+/** One rod between two points, each half in the colour of its end. */
 export interface Rod {
   readonly from: readonly [number, number, number];
   readonly to: readonly [number, number, number];
   readonly radius: number;
-  readonly colour: number;
+  readonly colours: readonly [number, number];
   readonly strength: number;
 }
 
@@ -52,7 +52,7 @@ const TONE = /* glsl */ `
   }
   vec3 tone(vec3 colour, float strength, float depth) {
     float far = smoothstep(depthRange.x, depthRange.y, depth);
-    return mix(paper, colour, strength * (1.0 - 0.8 * far));
+    return mix(paper, colour, strength * (1.0 - (strength < 0.9 ? 0.96 : 0.5) * far));
   }
 `;
 
@@ -76,7 +76,8 @@ const BALL_VERTEX = /* glsl */ `
     vPoint = c + k * (position.x * u + position.y * v);
     vSphere = vec4(c, sphere.w);
     vLook = look;
-    gl_Position = projectionMatrix * vec4(vPoint, 1.0);
+    bool hidden = look.a < 0.9 && (-c.z < front - sphere.w || -c.z > depthRange.y);
+    gl_Position = hidden ? vec4(2.0, 2.0, 2.0, 1.0) : projectionMatrix * vec4(vPoint, 1.0);
   }
 `;
 
@@ -111,27 +112,35 @@ const ROD_VERTEX = /* glsl */ `
   uniform mat4 modelViewMatrix;
   in vec3 position;
   in vec4 start;
-  in vec3 end;
-  in vec4 look;
+  in vec4 end;
+  in vec3 firstTone;
+  in vec3 secondTone;
   out vec3 vPoint;
   flat out vec3 vStart;
   flat out vec3 vAxis;
-  flat out vec2 vSize;
-  flat out vec4 vLook;
+  flat out vec3 vSize;
+  flat out vec3 vFirst;
+  flat out vec3 vSecond;
   void main() {
     vec3 a = (modelViewMatrix * vec4(start.xyz, 1.0)).xyz;
-    vec3 b = (modelViewMatrix * vec4(end, 1.0)).xyz;
+    vec3 b = (modelViewMatrix * vec4(end.xyz, 1.0)).xyz;
     float len = max(length(b - a), 1e-4);
     vec3 w = (b - a) / len;
-    vec3 u = normalize(cross(w, abs(w.x) < 0.7 ? vec3(1.0, 0.0, 0.0) : vec3(0.0, 1.0, 0.0)));
-    vec3 v = cross(w, u);
+    vec3 sight = normalize(a + b);
+    vec3 across = cross(w, sight);
+    float slant = max(length(across), 1e-3);
     float r = start.w + halo;
-    vPoint = mix(a, b, position.z) + r * (position.x * u + position.y * v);
+    // A slanting rod shows its side beyond the ends of its axis.
+    float over = min(r / slant, 4.0 * r);
+    vec3 along = position.y < 0.0 ? a - over * w : b + over * w;
+    vPoint = along + 1.04 * r * position.x * across / slant;
     vStart = a;
     vAxis = w;
-    vSize = vec2(start.w, len);
-    vLook = look;
-    gl_Position = projectionMatrix * vec4(vPoint, 1.0);
+    vSize = vec3(start.w, len, end.w);
+    vFirst = firstTone;
+    vSecond = secondTone;
+    bool hidden = end.w < 0.9 && (max(-a.z, -b.z) < front || min(-a.z, -b.z) > depthRange.y);
+    gl_Position = hidden ? vec4(2.0, 2.0, 2.0, 1.0) : projectionMatrix * vec4(vPoint, 1.0);
   }
 `;
 
@@ -141,8 +150,9 @@ const ROD_FRAGMENT = /* glsl */ `
   in vec3 vPoint;
   flat in vec3 vStart;
   flat in vec3 vAxis;
-  flat in vec2 vSize;
-  flat in vec4 vLook;
+  flat in vec3 vSize;
+  flat in vec3 vFirst;
+  flat in vec3 vSecond;
   out vec4 fragment;
   void main() {
     vec3 ray = normalize(vPoint);
@@ -152,21 +162,20 @@ const ROD_FRAGMENT = /* glsl */ `
     float off = abs(dot(vStart, across)) / s;
     if (off > vSize.x + halo) discard;
     vec3 rayFlat = ray - vAxis * dot(ray, vAxis);
-    vec3 startFlat = vStart - vAxis * dot(vStart, vAxis);
-    float nearest = dot(rayFlat, startFlat) / dot(rayFlat, rayFlat);
-    vec3 hit;
-    if (off <= vSize.x) {
-      hit = ray * (nearest - sqrt(vSize.x * vSize.x - off * off) / s);
-      bool edge = off > vSize.x - line;
-      fragment = vec4(tone(edge ? ink : vLook.rgb, vLook.a, -hit.z), 1.0);
-    } else {
-      hit = ray * nearest;
-      fragment = vec4(paper, 1.0);
-    }
+    float nearest = dot(rayFlat, vStart) / (s * s);
+    bool inside = off <= vSize.x;
+    if (inside) nearest -= sqrt(vSize.x * vSize.x - off * off) / s;
+    vec3 hit = ray * nearest;
     float height = dot(hit - vStart, vAxis);
     if (height < 0.0 || height > vSize.y) discard;
-    if (off > vSize.x) hit += ray * 0.9;
-    if (vLook.a < 0.9 && -hit.z < front) discard;
+    if (vSize.z < 0.9 && -hit.z < front) discard;
+    if (inside) {
+      vec3 colour = height < 0.5 * vSize.y ? vFirst : vSecond;
+      fragment = vec4(tone(off > vSize.x - line ? ink : colour, vSize.z, -hit.z), 1.0);
+    } else {
+      hit += ray * 0.9;
+      fragment = vec4(paper, 1.0);
+    }
     gl_FragDepth = depthOf(hit);
   }
 `;
@@ -192,6 +201,11 @@ export class InkUniforms {
     setPlain(this.values.paper.value, paper);
     setPlain(this.values.ink.value, ink);
   }
+
+  /** Leaves the halos out while many atoms move. */
+  setHalo(on: boolean): void {
+    this.values.halo.value = on ? HALO : 0;
+  }
 }
 
 /** Takes a colour as it is written, without conversion: what is drawn is ink on paper, not light. */
@@ -212,11 +226,10 @@ function material(uniforms: InkUniforms, vertexShader: string, fragmentShader: s
   });
 }
 
-function putLook(look: Float32Array, at: number, colour: number, strength: number): void {
-  look[at] = ((colour >> 16) & 255) / 255;
-  look[at + 1] = ((colour >> 8) & 255) / 255;
-  look[at + 2] = (colour & 255) / 255;
-  look[at + 3] = strength;
+function putTone(tones: Float32Array, at: number, colour: number): void {
+  tones[at] = ((colour >> 16) & 255) / 255;
+  tones[at + 1] = ((colour >> 8) & 255) / 255;
+  tones[at + 2] = (colour & 255) / 255;
 }
 
 export function ballMesh(balls: readonly Ball[], uniforms: InkUniforms): Mesh {
@@ -224,14 +237,10 @@ export function ballMesh(balls: readonly Ball[], uniforms: InkUniforms): Mesh {
   const look = new Float32Array(4 * balls.length);
   balls.forEach((ball, i) => {
     sphere.set([ball.x, ball.y, ball.z, ball.radius], 4 * i);
-    putLook(look, 4 * i, ball.colour, ball.strength);
+    putTone(look, 4 * i, ball.colour);
+    look[4 * i + 3] = ball.strength;
   });
-  const geometry = new InstancedBufferGeometry();
-  geometry.setAttribute(
-    'position',
-    new BufferAttribute(new Float32Array([-1, -1, 0, 1, -1, 0, 1, 1, 0, -1, 1, 0]), 3),
-  );
-  geometry.setIndex([0, 1, 2, 0, 2, 3]);
+  const geometry = quad();
   geometry.setAttribute('sphere', new InstancedBufferAttribute(sphere, 4));
   geometry.setAttribute('look', new InstancedBufferAttribute(look, 4));
   geometry.instanceCount = balls.length;
@@ -240,27 +249,30 @@ export function ballMesh(balls: readonly Ball[], uniforms: InkUniforms): Mesh {
 
 export function rodMesh(rods: readonly Rod[], uniforms: InkUniforms): Mesh {
   const start = new Float32Array(4 * rods.length);
-  const end = new Float32Array(3 * rods.length);
-  const look = new Float32Array(4 * rods.length);
+  const end = new Float32Array(4 * rods.length);
+  const tones = [new Float32Array(3 * rods.length), new Float32Array(3 * rods.length)] as const;
   rods.forEach((rod, i) => {
     start.set([...rod.from, rod.radius], 4 * i);
-    end.set(rod.to, 3 * i);
-    putLook(look, 4 * i, rod.colour, rod.strength);
+    end.set([...rod.to, rod.strength], 4 * i);
+    putTone(tones[0], 3 * i, rod.colours[0]);
+    putTone(tones[1], 3 * i, rod.colours[1]);
   });
-  const corners: number[] = [];
-  for (const z of [0, 1]) corners.push(-1, -1, z, 1, -1, z, 1, 1, z, -1, 1, z);
-  const geometry = new InstancedBufferGeometry();
-  geometry.setAttribute('position', new BufferAttribute(new Float32Array(corners), 3));
-  // Outward faces, so that each ray is cast once.
-  geometry.setIndex([
-    0, 2, 1, 0, 3, 2, 4, 5, 6, 4, 6, 7, 0, 1, 5, 0, 5, 4, 1, 2, 6, 1, 6, 5, 2, 3, 7, 2, 7, 6, 3, 0, 4, 3, 4,
-    7,
-  ]);
+  const geometry = quad();
   geometry.setAttribute('start', new InstancedBufferAttribute(start, 4));
-  geometry.setAttribute('end', new InstancedBufferAttribute(end, 3));
-  geometry.setAttribute('look', new InstancedBufferAttribute(look, 4));
+  geometry.setAttribute('end', new InstancedBufferAttribute(end, 4));
+  geometry.setAttribute('firstTone', new InstancedBufferAttribute(tones[0], 3));
+  geometry.setAttribute('secondTone', new InstancedBufferAttribute(tones[1], 3));
   geometry.instanceCount = rods.length;
   return plainMesh(geometry, material(uniforms, ROD_VERTEX, ROD_FRAGMENT));
+}
+
+/** The two triangles on which each thing is drawn. */
+function quad(): InstancedBufferGeometry {
+  const geometry = new InstancedBufferGeometry();
+  const corners = new Float32Array([-1, -1, 0, 1, -1, 0, 1, 1, 0, -1, 1, 0]);
+  geometry.setAttribute('position', new BufferAttribute(corners, 3));
+  geometry.setIndex([0, 1, 2, 0, 2, 3]);
+  return geometry;
 }
 
 function plainMesh(geometry: InstancedBufferGeometry, look: RawShaderMaterial): Mesh {

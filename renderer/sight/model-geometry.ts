@@ -115,9 +115,7 @@ export function modelGeometry(
           : [p[0] + shift * aside[0], p[1] + shift * aside[1], p[2] + shift * aside[2]];
       const a = at(from);
       const c = at(to);
-      const middle: [number, number, number] = [(a[0] + c[0]) / 2, (a[1] + c[1]) / 2, (a[2] + c[2]) / 2];
-      rods.push({ from: a, to: middle, radius, colour: tone(i), strength });
-      rods.push({ from: middle, to: c, radius, colour: tone(j), strength });
+      rods.push({ from: a, to: c, radius, colours: [tone(i), tone(j)], strength });
     }
   }
   return { balls, rods };

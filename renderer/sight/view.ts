@@ -34,6 +34,8 @@ const HALF_HEIGHTS: Readonly<Record<UnitKind, number>> = {
   helix: 5.4,
   plane: 3.9,
 };
+/** What recedes has faded this far behind the unit, Å. */
+const DEPTH = 14;
 /** What recedes is left out this much in front of the unit, Å. */
 const FRONT = 3;
 /** Width over height below which the view is drawn smaller. */
@@ -42,6 +44,11 @@ const LEAST_ASPECT = 1.12;
 const TURN_TIME = 420;
 /** Atoms within this many px of the pointer can be picked. */
 const PICK_PX = 16;
+/** More atoms than this are drawn coarser while they move. */
+const HEAVY = 1500;
+const HEAVY_SCALE = 0.7;
+/** How long nothing must have moved before the picture is drawn finer, ms. */
+const REST_DELAY = 140;
 /** Supersampling of a picture at rest. */
 const REST_SCALE = 2;
 
@@ -127,6 +134,7 @@ export class SightView {
   #home: Pose = this.#pose;
   #side: Side = 'sight';
   #zoom = 1;
+  #size = '';
   #width = 1;
   #height = 1;
   #frame = 0;
@@ -148,9 +156,14 @@ export class SightView {
     this.#rotation.add(this.#model);
     this.#reflection.add(this.#rotation);
     this.#scene.add(this.#reflection);
+    window.addEventListener('beforeprint', this.drawNow);
   }
 
+  /** Draws at once, for print. */
+  readonly drawNow = (): void => this.#draw(REST_SCALE * Math.max(1, window.devicePixelRatio));
+
   dispose(): void {
+    window.removeEventListener('beforeprint', this.drawNow);
     cancelAnimationFrame(this.#frame);
     clearTimeout(this.#rest);
     this.#clear();
@@ -349,13 +362,16 @@ export class SightView {
     }
     clearTimeout(this.#rest);
     const moving = this.#animation !== null;
-    this.#draw(moving ? 1 : Math.max(1, Math.min(window.devicePixelRatio, 2)));
+    const heavy = (this.#content?.molecule.atomCount ?? 0) > HEAVY;
+    this.#uniforms.setHalo(!heavy);
+    this.#draw(heavy ? HEAVY_SCALE : 1);
     if (moving) this.#request();
     else {
       this.#rest = setTimeout(() => {
+        this.#uniforms.setHalo(true);
         this.#draw(REST_SCALE * Math.max(1, window.devicePixelRatio));
         this.#svg.dataset['still'] = 'true';
-      }, 60);
+      }, REST_DELAY);
     }
   };
 
@@ -370,10 +386,14 @@ export class SightView {
     this.#camera.near = Math.max(0.5, distance - 80);
     this.#camera.far = distance + 120;
     this.#camera.updateProjectionMatrix();
-    this.#uniforms.values.depthRange.value.set(distance - 1, distance + 13);
+    this.#uniforms.values.depthRange.value.set(distance - 1, distance + DEPTH);
     this.#uniforms.values.front.value = distance - FRONT;
-    this.#renderer.setPixelRatio(scale);
-    this.#renderer.setSize(this.#width, this.#height, false);
+    // Giving the canvas a size, even the one it has, makes a new drawing buffer.
+    const size = `${this.#width} ${this.#height} ${scale}`;
+    if (size !== this.#size) {
+      this.#size = size;
+      this.#renderer.setDrawingBufferSize(this.#width, this.#height, scale);
+    }
     this.#renderer.setClearColor(0x000000, 1);
     const { paper } = this.#uniforms.values;
     this.#scene.background = null;
