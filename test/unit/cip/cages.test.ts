@@ -68,11 +68,17 @@ describe('cubanes', () => {
   );
 });
 
-describe('Rule 1b in auxiliary descriptors', () => {
-  it('counts the root distance from the root of the digraph (P-92.2.2; test/reference/DIFFERENCES.md)', () => {
+describe('auxiliary descriptors in small cages', () => {
+  it('Rule 1b counts the root distance from the root of the digraph (P-92.2.2; test/reference/DIFFERENCES.md)', () => {
     // Its two ring branches differ by Rule 5 alone; which is R rests on duplicates of the root beside duplicates of nearer atoms.
     const { molecule } = parseSmiles('F[C@@H]1[C@@H]2[C@@H]3[C@@H]2[C@H]13');
     const unit = examine(molecule).units.find(({ unit: { atoms } }) => atoms[0] === 1);
     expect(unit?.descriptor).toBe('s');
+  });
+
+  it('auxiliary descriptors at a double bond, by hand: S and R by Rule 1a, R on the side of F, so z (P-92.6)', () => {
+    const { molecule } = parseSmiles('[C@@H]12/C(=C/F)[C@@H]1[C@@H]2Br');
+    const unit = examine(molecule).units.find(({ unit: { kind } }) => kind === 'double-bond');
+    expect(unit?.descriptor).toBe('z');
   });
 });
