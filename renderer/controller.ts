@@ -81,6 +81,11 @@ export class Controller {
     }
   }
 
+  /** Tells the person of something that went wrong outside a command. */
+  report(error: unknown): void {
+    this.#problem(error);
+  }
+
   #problem(error: unknown): void {
     const message = error instanceof Error ? error.message : String(error);
     this.store.dispatch({ type: 'problem', message });
@@ -140,6 +145,12 @@ export class Controller {
     } catch (error) {
       this.#problem(error);
     }
+  }
+
+  /** The text of an entry as it stands in its file. */
+  async entryText(index: number): Promise<string> {
+    const [bytes] = await this.#chemistry.raw([index]);
+    return new TextDecoder().decode(bytes);
   }
 
   async recent(): Promise<readonly HostFile[]> {
@@ -557,6 +568,12 @@ export class Controller {
         break;
       case 'hydrogens':
         this.prefer({ hydrogens: !state.preferences.hydrogens });
+        break;
+      case 'overlay':
+        this.prefer({ overlay: !state.preferences.overlay });
+        break;
+      case 'ribbon':
+        this.prefer({ ribbon: !state.preferences.ribbon });
         break;
       case 'labels':
         this.prefer({ labels: !state.preferences.labels });

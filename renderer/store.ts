@@ -39,6 +39,10 @@ export interface Preferences {
   readonly singleKeys: boolean;
   readonly hydrogens: boolean;
   readonly labels: boolean;
+  /** In a macromolecule: the course of the chain under the sight. */
+  readonly ribbon: boolean;
+  /** The intended arrangement laid over the unit, where the intention has coordinates. */
+  readonly overlay: boolean;
 }
 
 export interface LadderState {
@@ -88,7 +92,15 @@ export const START: State = {
   side: 'sight',
   mirror: false,
   panels: { ledger: false, docket: true, ladder: true, drawing: true },
-  preferences: { theme: 'system', motion: true, singleKeys: true, hydrogens: false, labels: true },
+  preferences: {
+    theme: 'system',
+    motion: true,
+    singleKeys: true,
+    hydrogens: false,
+    labels: true,
+    ribbon: false,
+    overlay: true,
+  },
   dialog: 'none',
   problems: [],
   changes: [],

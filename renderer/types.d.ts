@@ -4,3 +4,6 @@ declare module '*?url' {
   const address: string;
   export default address;
 }
+declare module '3dmol/build/3Dmol.es6-min.js' {
+  export * from '3dmol';
+}

@@ -11,6 +11,7 @@ import {
 import { caption, unitName } from '../caption.ts';
 import { Glyph } from '../glyph.tsx';
 import { type SightContent, SightView } from '../sight/view.ts';
+import { Surroundings, surroundingsFormat } from '../surroundings/surroundings.ts';
 import { measure, TEXT } from '../text.ts';
 import { useAppState, useController } from '../use-store.ts';
 import { DrawingPanel } from './drawing.tsx';
@@ -26,12 +27,15 @@ const PRESS = 0.12;
 
 export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
   const controller = useController();
-  const state = useAppState('model', 'unit', 'side', 'preferences', 'lit', 'mirror', 'panels');
-  const { model, unit, side, preferences, lit, mirror } = state;
+  const state = useAppState('model', 'unit', 'side', 'preferences', 'lit', 'mirror', 'panels', 'files');
+  const { model, unit, side, preferences, lit, mirror, files } = state;
   const frame = useRef<HTMLDivElement>(null);
   const canvas = useRef<HTMLCanvasElement>(null);
-  const overlay = useRef<SVGSVGElement>(null);
+  const dialSvg = useRef<SVGSVGElement>(null);
   const view = useRef<SightView | null>(null);
+  const under = useRef<HTMLDivElement>(null);
+  const around = useRef<Surroundings | null>(null);
+  const pose = useRef<Parameters<Surroundings['follow']> | null>(null);
   const labelled = model?.docket?.units[unit] ?? null;
   const shown = model?.verdicts[unit] ?? null;
   const molecule = model?.molecule ?? null;
@@ -39,21 +43,35 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
   const intended = shown?.verdict === 'inverted' ? shown.intended : null;
   const words =
     molecule && labelled ? caption(molecule, labelled, shown, side) : molecule ? TEXT.wholeModel : '';
+  const overlay = useMemo(
+    () =>
+      preferences.overlay && model?.intended && model.mapping
+        ? { molecule: model.intended, mapping: model.mapping }
+        : null,
+    [model, preferences.overlay],
+  );
   const content = useMemo<SightContent | null>(
-    () => (molecule && inSpace ? { molecule, labelled, intended } : null),
-    [molecule, inSpace, labelled, intended],
+    () => (molecule && inSpace ? { molecule, labelled, intended, overlay } : null),
+    [molecule, inSpace, labelled, intended, overlay],
   );
 
   useLayoutEffect(() => {
-    if (!canvas.current || !overlay.current || !frame.current) return undefined;
-    const made = new SightView(canvas.current, overlay.current, {
+    if (!canvas.current || !dialSvg.current || !frame.current) return undefined;
+    const made = new SightView(canvas.current, dialSvg.current, {
       onPick: atom => controller.light(atom),
+      onPose: (pivot, turn, z) => {
+        pose.current = [pivot.clone(), turn.clone(), z];
+        around.current?.follow(pivot, turn, z);
+      },
       onSide: next => controller.store.dispatch({ type: 'side', side: next }),
     });
     view.current = made;
     controller.attachSight(made);
     const box = frame.current;
-    const watcher = new ResizeObserver(() => made.resize(box.clientWidth, box.clientHeight));
+    const watcher = new ResizeObserver(() => {
+      made.resize(box.clientWidth, box.clientHeight);
+      around.current?.resize();
+    });
     watcher.observe(box);
     made.resize(box.clientWidth, box.clientHeight);
     return () => {
@@ -73,6 +91,28 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
   useLayoutEffect(() => {
     view.current?.show(content);
   }, [content]);
+
+  const file = model ? files[model.file] : undefined;
+  const format = file && molecule?.residues ? surroundingsFormat(file.name) : null;
+  const { ribbon } = preferences;
+  const surrounded = format !== null && inSpace && !mirror && ribbon;
+  const entry = model?.index ?? -1;
+  useEffect(() => {
+    if (!surrounded || format === null || !under.current) return undefined;
+    let current = true;
+    const show = async (place: HTMLElement): Promise<void> => {
+      around.current ??= await Surroundings.create(place);
+      const text = await controller.entryText(entry);
+      if (!current) return;
+      around.current.show(`${file?.id ?? ''} ${entry}`, text, format, dark);
+      around.current.resize();
+      if (pose.current) around.current.follow(...pose.current);
+    };
+    show(under.current).catch((error: unknown) => controller.report(error));
+    return () => {
+      current = false;
+    };
+  }, [controller, surrounded, format, entry, file?.id, dark]);
 
   const last = useRef<{ x: number; y: number; moved: boolean } | null>(null);
   const local = (event: PointerEvent): { x: number; y: number } => {
@@ -135,9 +175,10 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
         onPointerUp={onUp}
         onKeyDown={onKey}
       >
-        <canvas ref={canvas} aria-hidden="true" />
+        <div ref={under} className="surroundings" aria-hidden="true" hidden={!surrounded} />
+        <canvas ref={canvas} className="sight-canvas" aria-hidden="true" />
         <svg
-          ref={overlay}
+          ref={dialSvg}
           className="dial"
           role="img"
           aria-label={words === '' ? TEXT.sight : words}

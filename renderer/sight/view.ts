@@ -19,6 +19,7 @@ import { dialOf } from './dial.ts';
 import { dialGroup, dialWords } from './dial-drawing.ts';
 import { frameOf } from './frames.ts';
 import { ballMesh, InkUniforms, rodMesh } from './impostors.ts';
+import { type IntendedModel, intendedRods } from './intended-overlay.ts';
 import { modelGeometry, unitAtoms } from './model-geometry.ts';
 
 /** The camera that sight and surroundings share (three's perspective, vertical angle in degrees; distance in Å). */
@@ -59,6 +60,8 @@ export interface SightContent {
   readonly labelled: LabelledUnit | null;
   /** The letter that was asked for where the found one is inverted. */
   readonly intended: string | null;
+  /** The intended model, to be laid over the unit; null without coordinates or where it is not asked for. */
+  readonly overlay: IntendedModel | null;
 }
 
 export interface SightLook {
@@ -74,6 +77,8 @@ export interface SightLook {
 export interface SightEvents {
   readonly onPick: (atom: number | null) => void;
   readonly onSide: (side: Side) => void;
+  /** The view as it is drawn: what stands in the middle, the rotation, where the rotated group stands. */
+  readonly onPose: (pivot: Vector3, turn: Quaternion, z: number) => void;
 }
 
 interface Pose {
@@ -147,8 +152,7 @@ export class SightView {
     this.#renderer = new WebGLRenderer({
       canvas,
       antialias: false,
-      alpha: false,
-      preserveDrawingBuffer: true,
+      alpha: true,
     });
     this.#svg = svg;
     this.#events = events;
@@ -184,7 +188,10 @@ export class SightView {
       this.#zoom = 1;
       this.#setSide('sight');
       this.#go(this.#home, before !== null && content !== null);
-    } else this.#request();
+    } else {
+      if (before.overlay !== content.overlay) this.#rebuild();
+      this.#request();
+    }
   }
 
   setLook(look: SightLook): void {
@@ -288,8 +295,11 @@ export class SightView {
     this.#clear();
     this.#uniforms.setColours(this.#look.dark ? DARK : LIGHT);
     if (this.#content) {
-      const { molecule, labelled } = this.#content;
-      const { balls, rods } = modelGeometry(molecule, labelled, this.#look);
+      const { molecule, labelled, overlay } = this.#content;
+      const { balls, rods: own } = modelGeometry(molecule, labelled, this.#look);
+      const alarm = Number.parseInt((this.#look.dark ? DARK : LIGHT).alarm.slice(1), 16);
+      const laid = labelled && overlay ? intendedRods(molecule, labelled, overlay, alarm) : [];
+      const rods = [...own, ...laid];
       this.#meshes = [rodMesh(rods, this.#uniforms), ballMesh(balls, this.#uniforms)];
       this.#model.add(...this.#meshes);
     }
@@ -394,14 +404,11 @@ export class SightView {
       this.#size = size;
       this.#renderer.setDrawingBufferSize(this.#width, this.#height, scale);
     }
-    this.#renderer.setClearColor(0x000000, 1);
-    const { paper } = this.#uniforms.values;
-    this.#scene.background = null;
-    // Colours are ink on paper: they pass through as they are written.
-    this.#renderer.getContext().clearColor(paper.value.r, paper.value.g, paper.value.b, 1);
+    // Nothing is painted where nothing stands: paper, or the surroundings, lie under the canvas.
+    this.#renderer.setClearColor(0x000000, 0);
     this.#renderer.autoClear = false;
-    const gl = this.#renderer.getContext();
-    gl.clear(gl.COLOR_BUFFER_BIT | gl.DEPTH_BUFFER_BIT);
+    this.#renderer.setScissorTest(false);
+    this.#renderer.clear();
     const panes = this.#panes();
     panes.forEach((pane, p) => {
       this.#reflection.scale.x = p === 0 ? 1 : -1;
@@ -413,6 +420,7 @@ export class SightView {
       this.#renderer.render(this.#scene, this.#camera);
     });
     this.#overlay();
+    this.#events.onPose(pivot, turn, CAMERA_DISTANCE - distance);
   }
 
   /** Where an atom is drawn: px from the top left, and its depth towards the reader in Å. */

@@ -171,6 +171,38 @@ describe('opening', () => {
     await expect.poll(() => page.getByRole('option').filter({ hasText: 'inverted' }).count()).toBe(0);
   });
 
+  test('an intention with coordinates is laid over the unit', async () => {
+    const page = await open(file('found.sdf', entries[1]!));
+    await page.getByRole('option').first().waitFor();
+    const chooser = page.waitForEvent('filechooser');
+    await page.keyboard.press('Control+k');
+    await page.getByRole('combobox').fill('configuration from a file');
+    await page.keyboard.press('Enter');
+    await (await chooser).setFiles(file('wanted.sdf', entries[0]!));
+    await page.getByRole('option').filter({ hasText: 'inverted' }).click();
+    await atRest(page);
+    const alarmed = async (): Promise<number> => {
+      const shot = await page.getByRole('application').screenshot();
+      return page.evaluate(async encoded => {
+        const bytes = Uint8Array.from(atob(encoded), c => c.charCodeAt(0));
+        const image = await createImageBitmap(new Blob([bytes], { type: 'image/png' }));
+        const context = new OffscreenCanvas(image.width, image.height).getContext('2d')!;
+        context.drawImage(image, 0, 0);
+        const { data } = context.getImageData(0, 0, image.width, image.height);
+        let count = 0;
+        for (let k = 0; k < data.length; k += 4) {
+          if (Math.hypot(data[k]! - 179, data[k + 1]! - 18, data[k + 2]! - 60) < 40) count++;
+        }
+        return count;
+      }, shot.toString('base64'));
+    };
+    const laid = await alarmed();
+    await picture(page, 'overlay-light');
+    await page.keyboard.press('i');
+    await atRest(page);
+    expect(laid).toBeGreaterThan((await alarmed()) + 300);
+  });
+
   test('an intention that is nonsense is refused with the reason', async () => {
     const page = await open(file('poses.sdf', models));
     await page.getByRole('option').first().waitFor();
@@ -281,6 +313,14 @@ describe('other kinds of model', () => {
       await page.getByRole('option', { selected: true }).waitFor();
       await atRest(page);
       await picture(page, 'macromolecule-light');
+      // The chain lies under the sight with the same camera.
+      await page.keyboard.press('c');
+      await page.locator('.surroundings canvas').waitFor();
+      for (let k = 0; k < 5; k++) await page.keyboard.press('-');
+      await atRest(page);
+      await page.waitForTimeout(300);
+      await picture(page, 'chain-light');
+      await page.keyboard.press('c');
       expect(await violations(page)).toEqual([]);
     },
   );
