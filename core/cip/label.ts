@@ -28,6 +28,9 @@ import { type UnitTable, unitTable } from './unit-table.ts';
 /** How many ways undecided units are tried before a ranking that may rest on them is given up. */
 const MOST_TRIALS = 16;
 
+const UNSTATED_NEIGHBOUR =
+  'the letter counts another unit, of which no configuration is stated, as none; once that is stated the letter may be another';
+
 /** What the ranking of one unit came to. */
 interface Outcome {
   readonly rankings: readonly Ranking[];
@@ -138,11 +141,14 @@ export class Labeller {
     if (stereogenic === undefined) return null;
     if (outcomes.every(o => o !== null && o.letter === stereogenic.letter))
       return labelled(unit, stereogenic, []);
-    return {
-      ...withoutLetter(unit, [
-        'no descriptor: the ranking depends on another unit whose configuration is not decided',
-      ]),
-    };
+    // In a drawing or a notation a unit of which nothing is stated counts as none, as in names (P-92.5.1: not stereogenic
+    // comes last), and the reader is told. Coordinates that do not decide are another matter: no letter.
+    const unstated = others.every(other => this.table.units[other]!.basis !== 'coordinates');
+    if (outcome !== null && unstated && unit.basis !== 'coordinates')
+      return labelled(unit, outcome, [UNSTATED_NEIGHBOUR]);
+    return withoutLetter(unit, [
+      'no descriptor: the ranking depends on another unit whose configuration is not decided',
+    ]);
   }
 
   /** Ranks and labels a unit with the senses that the table has now; null when ligands remain tied. */
