@@ -12,6 +12,8 @@ const COMMANDS: Readonly<Record<string, { readonly line: string; load(): Promise
     line: 'the mirror image of a model, in the right space group',
     load: () => import('./mirror.ts'),
   },
+  build: { line: 'relaxed models from SMILES, a drawing or a pose', load: () => import('./build.ts') },
+  strain: { line: 'MMFF94 energy and strain of poses', load: () => import('./strain.ts') },
 };
 
 function help(): string {
