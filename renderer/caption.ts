@@ -61,7 +61,7 @@ function view(molecule: Molecule, labelled: LabelledUnit, side: Side): string {
     if (last === undefined || labelled.signedVolume === null) return `${name}: ${letter}.`;
     const fourth = ligandName(molecule, last.ligand);
     const clockwise = labelled.signedVolume < 0;
-    if (side === 'free') return `${name}, turned freely: ${letter}; S returns to the sight.`;
+    if (side === 'free') return `${name}, turned freely; from the sight ${letter}.`;
     const seen = side === 'far' ? !clockwise : clockwise;
     const where = side === 'far' ? 'in front' : 'behind';
     const reading = side === 'far' ? `; from the sight ${letter}` : `, ${letter}`;

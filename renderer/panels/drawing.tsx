@@ -14,6 +14,8 @@ import { useAppState, useController } from '../use-store.ts';
 /** Drawing units: a bond is this long. */
 const BOND = 30;
 const MARGIN = 24;
+/** Largest scale, px for a drawing unit: a small molecule is not blown up. */
+const LARGEST = 1.7;
 
 interface Made {
   readonly molecule: Molecule;
@@ -97,6 +99,7 @@ function Drawing({
       role="img"
       aria-label={`${TEXT.drawing}${name === '' ? '' : `, ${name} marked`}`}
       preserveAspectRatio="xMidYMid meet"
+      style={{ maxWidth: LARGEST * width, maxHeight: LARGEST * height }}
     >
       <Bonds molecule={molecule} points={points} symbols={symbols} wedges={wedges} own={own} />
       {[...points].map(([atom, [x, y]]) => {

@@ -163,7 +163,7 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
   }, []);
 
   return (
-    <section className="sight" aria-label={TEXT.sight}>
+    <section className={`sight${molecule && !inSpace ? ' sight-notation' : ''}`} aria-label={TEXT.sight}>
       <div
         ref={frame}
         className={`sight-frame${inSpace ? '' : ' sight-none'}`}
@@ -209,7 +209,7 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
         {model?.error && (
           <div className="sight-message" role="alert">
             <b>{TEXT.unreadable(model.entry, model.error.line)}</b>
-            <span>{model.error.message}.</span>
+            <span>{sentence(model.error.message)}</span>
           </div>
         )}
       </div>

@@ -13,7 +13,7 @@ export interface IntendedModel {
 
 /** Bonds from the unit within which atoms are laid on one another. */
 const REACH = 3;
-const RADIUS = 0.045;
+const RADIUS = 0.07;
 
 /** Thin rods for the bonds of the unit as they were intended, laid over the model around it; empty without coordinates to lay. */
 export function intendedRods(
@@ -25,12 +25,10 @@ export function intendedRods(
   const r = molecule.coordinates;
   const s = intended.molecule.coordinates;
   if (r === null || s === null || intended.molecule.dimension !== 3) return [];
-  const pairs: [number, number][] = [];
-  for (const atom of within(molecule, labelled.unit.atoms, REACH)) {
-    const other = intended.mapping[atom] ?? -1;
-    if (other >= 0 && isLocated(molecule, atom) && isLocated(intended.molecule, other))
-      pairs.push([atom, other]);
-  }
+  const all = pairsWithin(molecule, labelled, intended);
+  // A lone substituent goes where the inversion puts it; what holds the unit in place is the rest.
+  const anchored = all.filter(([atom]) => !isLoneSubstituent(molecule, labelled, atom));
+  const pairs = anchored.length >= 3 ? anchored : all;
   if (pairs.length < 3) return [];
   const fixed = Float64Array.from(
     pairs.flatMap(([atom]) => [r[3 * atom]!, r[3 * atom + 1]!, r[3 * atom + 2]!]),
@@ -63,6 +61,30 @@ export function intendedRods(
     rods.push({ from: place(i), to: place(j), radius: RADIUS, colours: [colour, colour], strength: 1 });
   }
   return rods;
+}
+
+function pairsWithin(
+  molecule: Molecule,
+  labelled: LabelledUnit,
+  intended: IntendedModel,
+): [number, number][] {
+  const pairs: [number, number][] = [];
+  for (const atom of within(molecule, labelled.unit.atoms, REACH)) {
+    const other = intended.mapping[atom] ?? -1;
+    if (other >= 0 && isLocated(molecule, atom) && isLocated(intended.molecule, other))
+      pairs.push([atom, other]);
+  }
+  return pairs;
+}
+
+/** Whether an atom is a ligand of the unit with no other neighbour but hydrogens. */
+function isLoneSubstituent(molecule: Molecule, labelled: LabelledUnit, atom: number): boolean {
+  if (!labelled.unit.ends.some(end => end.ligands.includes(atom))) return false;
+  let heavy = 0;
+  for (let k = molecule.neighbourStart[atom]!; k < molecule.neighbourStart[atom + 1]!; k++) {
+    if (molecule.elements[molecule.neighbours[k]!] !== 1) heavy++;
+  }
+  return heavy < 2;
 }
 
 /** Atoms within some bonds of others, these included. */

@@ -1,7 +1,8 @@
 /** The window on the demo: opened, stepped through by keyboard, the dial read as drawn, every screen checked for accessibility. */
 import type { Browser } from 'playwright-core';
 import { afterAll, afterEach, beforeAll, describe, expect, test } from 'vitest';
-import { demoFiles, launchBrowser, openWindow, type OpenedWindow } from './launch.ts';
+import { join } from 'node:path';
+import { demoFiles, launchBrowser, openWindow, outputFolder, type OpenedWindow } from './launch.ts';
 import { atRest, picture, pixels, readDial, runOf, violations } from './window.ts';
 
 let browser: Browser;
@@ -256,4 +257,37 @@ test('zoomed to 200 % everything can still be reached', async () => {
   }
   await picture(page, 'zoomed-200');
   expect(await page.evaluate(() => document.documentElement.scrollWidth)).toBeLessThanOrEqual(640);
+});
+
+test('on paper: the sight, the caption and the limits, without the controls', async () => {
+  const page = await demo();
+  await page.emulateMedia({ media: 'print' });
+  expect(await page.getByRole('button', { name: 'Find a command' }).isVisible()).toBe(false);
+  expect(await page.getByRole('navigation', { name: 'Ledger' }).isVisible()).toBe(false);
+  for (const text of ['C2, seen with H26 behind', 'is not a proof of absolute configuration']) {
+    expect(await page.getByText(text).first().isVisible()).toBe(true);
+  }
+  await atRest(page);
+  await page.screenshot({ path: join(outputFolder, 'print.png'), fullPage: true });
+});
+
+test('the mirror image stands beside the model with the other hand', async () => {
+  const page = await demo();
+  await page.keyboard.press('m');
+  await page.getByText('mirror image, S').waitFor();
+  await atRest(page);
+  await picture(page, 'mirror-light');
+  const sweeps = await page
+    .locator('.dial-sweep')
+    .evaluateAll(all => all.map(one => one.getAttribute('data-turn')));
+  expect(sweeps).toEqual(['clockwise', 'anticlockwise']);
+  const dial = await readDial(page);
+  // What stands to the right of the model's middle stands as far to the left of the mirror image's.
+  const [model, mirror] = [dial.numerals.slice(0, 3), dial.numerals.slice(3)];
+  const seam = dial.middle.x;
+  model.forEach((numeral, k) => {
+    expect(mirror[k]!.text).toBe(numeral.text);
+    expect(mirror[k]!.x - seam).toBeCloseTo(seam - numeral.x, 0);
+    expect(mirror[k]!.y).toBeCloseTo(numeral.y, 0);
+  });
 });
