@@ -11,7 +11,7 @@ import type { EmbeddingTables } from './resources.ts';
 
 export interface TorsionScan {
   readonly points: readonly { readonly degrees: number; readonly energy: number }[];
-  /** Lowest way from the best negative to the best positive torsion, through 0° or 180°, above the lowest minimum; kcal/mol. */
+  /** Lowest way from the best negative to the best positive torsion, through 0° or 180°, above the lowest minimum; where that lies in the plane, the whole turn; kcal/mol. */
   readonly barrier: number;
   /** The torsion of the top of that way, degrees. */
   readonly through: number;
@@ -96,7 +96,11 @@ export function scanTorsion(
   };
   const over180 = top(positive, negative);
   const over0 = top(negative, positive);
-  const peak = energies[over180]! < energies[over0]! ? over180 : over0;
+  // With the minimum in the plane there are no two hands: the whole turn counts.
+  const bottom = energies.indexOf(floor);
+  const planar = Math.abs(angle(bottom)) < 1.5 * step || Math.abs(angle(bottom)) > 180 - 1.5 * step;
+  const whole = energies.indexOf(Math.max(...energies));
+  const peak = planar ? whole : energies[over180]! < energies[over0]! ? over180 : over0;
   const barrier = energies[peak]! - floor;
   return {
     points: Array.from(energies, (energy, s) => ({ degrees: angle(s), energy: energy - floor })).sort(
