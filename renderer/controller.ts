@@ -1,4 +1,5 @@
 /** What happens when a command is given or something is opened: between host, chemistry worker and store. */
+import { z } from 'zod';
 import { DEFAULT_SETTINGS } from '../core/docket.ts';
 import { sightFigure } from '../core/record/sight-figure.ts';
 import { caption, unitName } from './caption.ts';
@@ -20,6 +21,33 @@ import {
 import { TEXT } from './text.ts';
 import { ChemistryClient, type News } from './worker/client.ts';
 import type { Model, Row } from './worker/protocol.ts';
+
+const PREFERENCES_KEY = 'deasil.preferences';
+
+const preferences = z
+  .object({
+    theme: z.enum(['system', 'light', 'dark']),
+    motion: z.boolean(),
+    singleKeys: z.boolean(),
+    hydrogens: z.boolean(),
+    labels: z.boolean(),
+    ribbon: z.boolean(),
+    overlay: z.boolean(),
+  })
+  .partial();
+
+/** Preferences of earlier windows on this machine, as far as they are understood. */
+function readPreferences(): Partial<Preferences> {
+  try {
+    const parsed = preferences.safeParse(JSON.parse(localStorage.getItem(PREFERENCES_KEY) ?? '{}'));
+    if (!parsed.success) return {};
+    const known = Object.entries(parsed.data).filter(([, value]) => value !== undefined);
+    return Object.fromEntries(known) as Partial<Preferences>;
+  } catch {
+    // Without storage, or with something else in it, the plain preferences hold.
+    return {};
+  }
+}
 
 /** How long after the last change the session is written, ms. */
 const SESSION_DELAY = 600;
@@ -44,6 +72,7 @@ export class Controller {
   #sessionTimer: ReturnType<typeof setTimeout> | undefined;
   #saved: State['present'] | null = null;
   #openFiles: readonly HostFile[] = [];
+  #intention: Parameters<ChemistryClient['intend']>[0] = null;
   #before: readonly Row[] | null = null;
   #focusRemark: (() => void) | null = null;
   readonly #end: () => void;
@@ -73,6 +102,7 @@ export class Controller {
   }
 
   async start(): Promise<void> {
+    this.store.dispatch({ type: 'preference', change: readPreferences() });
     try {
       const files = await this.#host.startFiles();
       if (files.length > 0) await this.openFiles(files);
@@ -104,18 +134,22 @@ export class Controller {
     if (!files.some(one => one.id === file.id)) return;
     const { rows, rowCount, current } = this.store.get();
     this.#before = rows.slice(0, rowCount);
+    const { model, unit } = this.store.get();
+    const atoms = model?.docket?.units[unit]?.unit.atoms;
+    if (atoms) this.#hold = { atoms: atoms.join('-') };
     const judgements = this.store.get().present.judgements;
     this.#openFiles = files;
     this.store.dispatch({ type: 'opening' });
     this.store.dispatch({ type: 'restore', judgements });
     this.#wanted = Math.max(0, current);
-    this.#chemistry.open(files, null, DEFAULT_SETTINGS);
+    this.#chemistry.open(files, this.#intention, DEFAULT_SETTINGS);
   }
 
   async openFiles(files: readonly HostFile[]): Promise<void> {
     if (files.length === 0) return;
     this.#flushSession();
     this.#openFiles = files;
+    this.#intention = null;
     this.#before = null;
     this.store.dispatch({ type: 'opening' });
     this.#wanted = 0;
@@ -195,7 +229,7 @@ export class Controller {
       const now = rows[i]!;
       const then = before.find(row => row.file === now.file && row.entry === now.entry);
       if (!then || then.letters === now.letters) continue;
-      lines.push(`${now.name || `entry ${now.entry}`}: ${then.letters} became ${now.letters}`);
+      lines.push(`${now.name || `entry ${now.entry}`}: ${changedUnits(then, now)}`);
       if (lines.length >= 20) break;
     }
     this.store.dispatch({
@@ -307,7 +341,7 @@ export class Controller {
   prefer(change: Partial<Preferences>): void {
     this.store.dispatch({ type: 'preference', change });
     try {
-      localStorage.setItem('deasil.preferences', JSON.stringify(this.store.get().preferences));
+      localStorage.setItem(PREFERENCES_KEY, JSON.stringify(this.store.get().preferences));
     } catch {
       // Without storage the preference holds for this window only.
     }
@@ -321,6 +355,7 @@ export class Controller {
 
   #intend(intention: Parameters<ChemistryClient['intend']>[0]): void {
     this.#wanted = Math.max(0, this.store.get().current);
+    this.#intention = intention;
     this.#chemistry.intend(intention);
   }
 
@@ -627,6 +662,21 @@ export class Controller {
         .catch(error => this.#problem(error));
     }
   }
+}
+
+/** Which units of an entry have another letter than before. */
+function changedUnits(then: Row, now: Row): string {
+  if (then.names !== now.names || then.letters.length !== now.letters.length) {
+    return `${then.letters || 'nothing'} became ${now.letters || 'nothing'}`;
+  }
+  const names = now.names.split(' ');
+  const changed: string[] = [];
+  names.forEach((name, u) => {
+    const before = then.letters.charAt(u);
+    const after = now.letters.charAt(u);
+    if (before !== after) changed.push(`${name} ${before} became ${after}`);
+  });
+  return changed.join(', ') || `${then.letters} became ${now.letters}`;
 }
 
 /** Whether a theme shows dark paper on this machine now. */

@@ -55,7 +55,7 @@ export function ledgerRows(rows: readonly Row[], query: LedgerQuery): readonly R
     if (query.doubtfulOnly && row.finding === 'none') return false;
     if (words.length === 0) return true;
     const text =
-      `${row.entry} ${row.name} ${row.formula} ${row.letters} ${row.doubtful} ${row.relation ?? ''} ${row.finding}`.toLowerCase();
+      `${row.entry} ${row.name} ${row.formula} ${row.letters} ${row.names} ${row.doubtful} ${row.relation ?? ''} ${row.finding}`.toLowerCase();
     return words.every(word => text.includes(word));
   });
   if (query.column === 'entry' && !query.descending) return kept;

@@ -1,6 +1,5 @@
 /** The judgement of one entry for the window: examined, set against its intention, as a model in full and as a line of the ledger. */
-import { elementSymbol } from '../../core/chemistry/elements.ts';
-import { atomLabel, type Molecule } from '../../core/chemistry/molecule.ts';
+import type { Molecule } from '../../core/chemistry/molecule.ts';
 import type { EntryComparison, Examined } from '../../core/comparison/compare.ts';
 import { distortionOf } from '../../core/comparison/distortion.ts';
 import { identityOf } from '../../core/comparison/consistency.ts';
@@ -16,6 +15,7 @@ import { smilesFormat } from '../../core/formats/smiles.ts';
 import { type EntryRecord, entryRecord, unreadableRecord } from '../../core/record/json.ts';
 import type { RecordFigure } from '../../core/record/report.ts';
 import { sightFigure } from '../../core/record/sight-figure.ts';
+import { unitName } from '../caption.ts';
 import type { Finding, Model, Row, ShownVerdict } from './protocol.ts';
 
 /** The intentions of a job, with their structures by name for the drawing. */
@@ -233,12 +233,16 @@ const VERDICT_LETTERS: Readonly<Record<Verdict, string>> = {
 /** Relations in which an entry is not what was asked for, whatever its single units say. */
 const BAD_RELATIONS: readonly (Relation | null)[] = ['other compound', 'undecided', 'unmatched'];
 
+/** Units of an entry that its line names. */
+const MOST_NAMES = 24;
+
 /** The line of the ledger for a judged entry. */
 export function rowOf(model: Model): Row {
   const { molecule, docket } = model;
   let letters = '';
   let verdicts = '';
   const doubtful: string[] = [];
+  const names: string[] = [];
   let firmness: number | null = null;
   let finding: Finding = model.error ? 'error' : 'none';
   const raise = (to: Finding): void => {
@@ -248,6 +252,8 @@ export function rowOf(model: Model): Row {
     const { unit } = labelled;
     const verdict = model.verdicts[u]?.verdict ?? null;
     letters += labelled.descriptor ?? '·';
+    const name = molecule ? unitName(molecule, labelled).replaceAll(' ', '/') : '';
+    if (u < MOST_NAMES) names.push(name);
     const state = unit.state === 'flat' ? 'f' : unit.state === 'unspecified' ? 'u' : '-';
     verdicts += verdict === null ? state : VERDICT_LETTERS[verdict];
     if (unit.labile === null && unit.firmness !== null) firmness = Math.min(firmness ?? 1, unit.firmness);
@@ -256,7 +262,7 @@ export function rowOf(model: Model): Row {
     else if (verdict === 'missing') raise('missing');
     else if (flat) raise('flat');
     else return;
-    if (molecule) doubtful.push(unit.atoms.map(atom => atomLabel(molecule, atom, elementSymbol)).join('='));
+    if (doubtful.length < MOST_NAMES) doubtful.push(name);
   });
   for (const unit of model.absent) {
     if (unit.verdict !== 'missing') continue;
@@ -274,6 +280,7 @@ export function rowOf(model: Model): Row {
     formula: docket?.molecules.map(({ formula }) => formula).join('.') ?? '',
     atoms: molecule?.atomCount ?? 0,
     letters,
+    names: names.join(' '),
     verdicts,
     doubtful: doubtful.join(', '),
     firmness,

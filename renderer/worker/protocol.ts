@@ -26,6 +26,8 @@ export interface Row {
   readonly letters: string;
   /** One letter a unit, in the order of `letters`: `a`grees, `i`nverted, `r`elabelled, `f`lat, `o`pen, `m`issing, `-` nothing asked, `u`nspecified. */
   readonly verdicts: string;
+  /** Labels of the first units, in the order of `letters`, separated by spaces. */
+  readonly names: string;
   /** Labels of the units that are in doubt: "C7, C9". */
   readonly doubtful: string;
   /** Lowest firmness of its units, null without coordinates. */

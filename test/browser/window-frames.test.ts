@@ -3,7 +3,15 @@ import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { afterAll, beforeAll, expect, test } from 'vitest';
-import { demoFiles, openWindow, outputFolder, type OpenedWindow } from './launch.ts';
+import {
+  demoFiles,
+  ensureBuilt,
+  launchBrowser,
+  openWindow,
+  outputFolder,
+  type OpenedWindow,
+  startProgram,
+} from './launch.ts';
 import { atRest } from './window.ts';
 
 let folder: string;
@@ -85,6 +93,44 @@ async function framesOf(opened: OpenedWindow): Promise<number> {
     return (1000 * frames) / (performance.now() - start);
   });
 }
+
+test('from the start of the program to the first sight of the demo', async () => {
+  ensureBuilt('electron', 'window');
+  const browser = await launchBrowser();
+  const started = performance.now();
+  const program = startProgram(['--browser'], {
+    INIT_CWD: folder,
+    XDG_CONFIG_HOME: join(folder, 'config'),
+    XDG_STATE_HOME: join(folder, 'state'),
+  });
+  try {
+    const address = await new Promise<string>((resolve, reject) => {
+      let text = '';
+      program.stdout!.on('data', (chunk: Buffer) => {
+        text += chunk.toString();
+        const found = /http:\/\/127\.0\.0\.1:\S+/u.exec(text);
+        if (found) resolve(found[0]);
+      });
+      program.on('exit', () => reject(new Error(`it ended: ${text}`)));
+    });
+    const printed = performance.now();
+    const page = await browser.newPage();
+    await page.goto(address);
+    await page.getByRole('option').first().waitFor();
+    await atRest(page);
+    const seconds = (from: number, to: number): number => Math.round((to - from) / 100) / 10;
+    writeFileSync(
+      join(outputFolder, 'first-sight.json'),
+      JSON.stringify({
+        addressAfter: seconds(started, printed),
+        sightAfter: seconds(started, performance.now()),
+      }),
+    );
+  } finally {
+    program.kill('SIGINT');
+    await browser.close();
+  }
+});
 
 test('a molecule, one with its surroundings, and 5,000 atoms', async () => {
   const measured: Record<string, number> = {};

@@ -236,7 +236,7 @@ describe('opening', () => {
     await page.getByRole('option').first().waitFor();
     await page.waitForTimeout(300);
     writeFileSync(path, entries[1]!.replace('model 2', 'model 1'));
-    await page.getByText(/RSSRE became RRSRE/u).waitFor({ timeout: 15_000 });
+    await page.getByText('C4 S became R').waitFor({ timeout: 15_000 });
     await picture(page, 'changed-light');
   });
 

@@ -291,3 +291,16 @@ test('the mirror image stands beside the model with the other hand', async () =>
     expect(mirror[k]!.y).toBeCloseTo(numeral.y, 0);
   });
 });
+
+test('preferences are kept for the next window', async () => {
+  const page = await demo();
+  await page.keyboard.press('b');
+  await atRest(page);
+  expect(await page.locator('.atom-label').count()).toBe(0);
+  await page.reload();
+  await page.getByRole('option').first().waitFor();
+  await atRest(page);
+  expect(await page.locator('.atom-label').count()).toBe(0);
+  await page.keyboard.press('b');
+  await expect.poll(() => page.locator('.atom-label').count()).toBeGreaterThan(0);
+});

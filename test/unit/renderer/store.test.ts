@@ -89,6 +89,7 @@ const row: fc.Arbitrary<Row> = fc.record({
   formula: fc.constantFrom('C2H6O', 'C10H8', 'CH4'),
   atoms: fc.nat(),
   letters: fc.constantFrom('RS', 'R', '·'),
+  names: fc.constantFrom('', 'C7 C9'),
   verdicts: fc.constantFrom('aa', 'i', 'f'),
   doubtful: fc.constantFrom('', 'C7'),
   firmness: fc.option(fc.double({ min: 0, max: 1, noNaN: true })),
