@@ -1,11 +1,10 @@
 /** Atoms and bonds as ray-cast impostors: exact circles and rods from a few triangles each, in flat ink with a paper halo that tells near from far. */
 import {
   BufferAttribute,
+  BufferGeometry,
   Color,
   DoubleSide,
   GLSL3,
-  InstancedBufferAttribute,
-  InstancedBufferGeometry,
   Mesh,
   RawShaderMaterial,
   Vector2,
@@ -240,42 +239,62 @@ export function ballMesh(balls: readonly Ball[], uniforms: InkUniforms): Mesh {
     putTone(look, 4 * i, ball.colour);
     look[4 * i + 3] = ball.strength;
   });
-  const geometry = quad();
-  geometry.setAttribute('sphere', new InstancedBufferAttribute(sphere, 4));
-  geometry.setAttribute('look', new InstancedBufferAttribute(look, 4));
-  geometry.instanceCount = balls.length;
+  const geometry = quads(balls.length, { sphere: [sphere, 4], look: [look, 4] });
   return plainMesh(geometry, material(uniforms, BALL_VERTEX, BALL_FRAGMENT));
 }
 
 export function rodMesh(rods: readonly Rod[], uniforms: InkUniforms): Mesh {
   const start = new Float32Array(4 * rods.length);
   const end = new Float32Array(4 * rods.length);
-  const tones = [new Float32Array(3 * rods.length), new Float32Array(3 * rods.length)] as const;
+  const firstTone = new Float32Array(3 * rods.length);
+  const secondTone = new Float32Array(3 * rods.length);
   rods.forEach((rod, i) => {
     start.set([...rod.from, rod.radius], 4 * i);
     end.set([...rod.to, rod.strength], 4 * i);
-    putTone(tones[0], 3 * i, rod.colours[0]);
-    putTone(tones[1], 3 * i, rod.colours[1]);
+    putTone(firstTone, 3 * i, rod.colours[0]);
+    putTone(secondTone, 3 * i, rod.colours[1]);
   });
-  const geometry = quad();
-  geometry.setAttribute('start', new InstancedBufferAttribute(start, 4));
-  geometry.setAttribute('end', new InstancedBufferAttribute(end, 4));
-  geometry.setAttribute('firstTone', new InstancedBufferAttribute(tones[0], 3));
-  geometry.setAttribute('secondTone', new InstancedBufferAttribute(tones[1], 3));
-  geometry.instanceCount = rods.length;
+  const geometry = quads(rods.length, {
+    start: [start, 4],
+    end: [end, 4],
+    firstTone: [firstTone, 3],
+    secondTone: [secondTone, 3],
+  });
   return plainMesh(geometry, material(uniforms, ROD_VERTEX, ROD_FRAGMENT));
 }
 
-/** The two triangles on which each thing is drawn. */
-function quad(): InstancedBufferGeometry {
-  const geometry = new InstancedBufferGeometry();
-  const corners = new Float32Array([-1, -1, 0, 1, -1, 0, 1, 1, 0, -1, 1, 0]);
-  geometry.setAttribute('position', new BufferAttribute(corners, 3));
-  geometry.setIndex([0, 1, 2, 0, 2, 3]);
+const CORNERS = [-1, -1, 0, 1, -1, 0, 1, 1, 0, -1, 1, 0];
+
+/**
+ * Two triangles for each thing, its values at all four corners. Written out rather than instanced: in software each
+ * instance of so few corners costs as much as a draw call.
+ */
+function quads(
+  count: number,
+  values: Readonly<Record<string, readonly [Float32Array, number]>>,
+): BufferGeometry {
+  const position = new Float32Array(12 * count);
+  const index = new Uint32Array(6 * count);
+  for (let i = 0; i < count; i++) {
+    position.set(CORNERS, 12 * i);
+    const first = 4 * i;
+    index.set([first, first + 1, first + 2, first, first + 2, first + 3], 6 * i);
+  }
+  const geometry = new BufferGeometry();
+  geometry.setAttribute('position', new BufferAttribute(position, 3));
+  geometry.setIndex(new BufferAttribute(index, 1));
+  for (const [name, [source, size]] of Object.entries(values)) {
+    const spread = new Float32Array(4 * source.length);
+    for (let i = 0; i < count; i++) {
+      const value = source.subarray(size * i, size * (i + 1));
+      for (let corner = 0; corner < 4; corner++) spread.set(value, size * (4 * i + corner));
+    }
+    geometry.setAttribute(name, new BufferAttribute(spread, size));
+  }
   return geometry;
 }
 
-function plainMesh(geometry: InstancedBufferGeometry, look: RawShaderMaterial): Mesh {
+function plainMesh(geometry: BufferGeometry, look: RawShaderMaterial): Mesh {
   const mesh = new Mesh(geometry, look);
   mesh.frustumCulled = false;
   return mesh;

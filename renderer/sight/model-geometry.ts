@@ -25,6 +25,9 @@ const HYDROGEN_ROD = 0.045;
 /** Distance between the rods of a double bond, Å. */
 const PAIR_GAP = 0.2;
 const REST_STRENGTH = 0.5;
+/** Atoms up to which a model is drawn whole around a unit; of a larger one what lies near, by the sum of the coordinate differences in Å. */
+const WHOLE = 20_000;
+const NEAR = 70;
 
 /** The atoms that belong to a unit: its ends, its ligands, and what lies between the ends. */
 export function unitAtoms(molecule: Molecule, labelled: LabelledUnit): ReadonlyMap<number, 'own' | 'ligand'> {
@@ -80,8 +83,17 @@ export function modelGeometry(
   const rest = labelled ? REST_STRENGTH : 1;
   const balls: Ball[] = [];
   const rods: Rod[] = [];
+  const middle = labelled && molecule.atomCount > WHOLE ? labelled.unit.atoms[0] : undefined;
+  const near = (atom: number): boolean =>
+    middle === undefined ||
+    Math.abs(r[3 * atom]! - r[3 * middle]!) +
+      Math.abs(r[3 * atom + 1]! - r[3 * middle + 1]!) +
+      Math.abs(r[3 * atom + 2]! - r[3 * middle + 2]!) <
+      NEAR;
   const shown = (atom: number): boolean =>
-    isLocated(molecule, atom) && (molecule.elements[atom] !== 1 || look.hydrogens || own.has(atom));
+    isLocated(molecule, atom) &&
+    near(atom) &&
+    (molecule.elements[atom] !== 1 || look.hydrogens || own.has(atom));
   const tone = (atom: number): number => elementTone(molecule.elements[atom]!, look.dark);
   for (let i = 0; i < molecule.atomCount; i++) {
     if (!shown(i)) continue;

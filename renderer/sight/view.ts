@@ -46,7 +46,7 @@ const TURN_TIME = 420;
 /** Atoms within this many px of the pointer can be picked. */
 const PICK_PX = 16;
 /** More atoms than this are drawn coarser while they move. */
-const HEAVY = 1500;
+const HEAVY = 8000;
 const HEAVY_SCALE = 0.7;
 /** How long nothing must have moved before the picture is drawn finer, ms. */
 const REST_DELAY = 140;
