@@ -53,7 +53,7 @@ export class LineTable {
   /** Text of a line without its ending; empty past the end. */
   text(line: number): string {
     if (line >= this.count) return '';
-    return decodeText(this.bytes.subarray(this.starts[line]!, this.ends[line]!));
+    return decodeText(this.bytes.subarray(this.starts[line], this.ends[line]));
   }
 
   /** Length of a line in bytes, its ending not counted. */

@@ -68,3 +68,36 @@ export function joined(first: Uint8Array, second: Uint8Array): Uint8Array {
   both.set(second, first.length);
   return both;
 }
+
+/** Bytes that are added at the end and dropped at the beginning, at a cost that grows with their number and not with that of the chunks. */
+export class ByteQueue {
+  private store = new Uint8Array(0);
+  private start = 0;
+  private end = 0;
+
+  get length(): number {
+    return this.end - this.start;
+  }
+
+  /** The bytes held, a view that the next `add` may overwrite. */
+  get bytes(): Uint8Array {
+    return this.store.subarray(this.start, this.end);
+  }
+
+  add(chunk: Uint8Array): void {
+    const needed = this.length + chunk.length;
+    if (this.end + chunk.length > this.store.length) {
+      const target = needed > this.store.length / 2 ? new Uint8Array(2 * needed) : this.store;
+      target.set(this.bytes);
+      this.end = this.length;
+      this.start = 0;
+      this.store = target;
+    }
+    this.store.set(chunk, this.end);
+    this.end += chunk.length;
+  }
+
+  drop(count: number): void {
+    this.start += count;
+  }
+}

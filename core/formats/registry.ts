@@ -1,12 +1,23 @@
 /** The formats that can be read, told by content first and by name second. */
+import { cifFormat } from './cif.ts';
 import { gunzip } from './gzip.ts';
+import { ByteQueue } from './lines.ts';
 import { DEFAULT_LIMITS, type Entry, type Format, type Limits } from './format.ts';
 import { inchiFormat } from './inchi.ts';
+import { pdbFormat } from './pdb.ts';
 import { sdfFormat } from './sdf.ts';
 import { smilesFormat } from './smiles.ts';
+import { xyzFormat } from './xyz.ts';
 
 /** All formats; where two fit equally well, the earlier. */
-export const FORMATS: readonly Format[] = [sdfFormat, inchiFormat, smilesFormat];
+export const FORMATS: readonly Format[] = [
+  sdfFormat,
+  cifFormat,
+  pdbFormat,
+  xyzFormat,
+  inchiFormat,
+  smilesFormat,
+];
 
 /** Least score at which content alone decides. */
 const SURE = 0.5;
@@ -34,10 +45,24 @@ export function formatNamed(name: string): Format | null {
   return FORMATS.find(format => format.name === name) ?? null;
 }
 
+/** What is wrong with a file as a whole. */
+export class FileProblem extends Error {
+  readonly code: 'empty-file' | 'not-text' | 'unknown-format';
+
+  constructor(code: FileProblem['code'], message: string) {
+    super(message);
+    this.name = 'FileProblem';
+    this.code = code;
+  }
+}
+
+/** Bytes of a file that are looked at to tell its format. */
+const HEAD_BYTES = 64 * 1024;
+
 /**
  * Reads all entries of a stream, compressed or not.
  *
- * @throws Error when the stream is empty or in no known format.
+ * @throws FileProblem when the stream is empty, binary or in no known format.
  */
 export async function* readEntries(
   chunks: AsyncIterable<Uint8Array>,
@@ -45,16 +70,24 @@ export async function* readEntries(
   limits: Limits = DEFAULT_LIMITS,
 ): AsyncGenerator<Entry> {
   const plain = gunzip(chunks)[Symbol.asyncIterator]();
-  const first = await plain.next();
-  if (first.done) throw new Error(`${fileName}: the file is empty`);
-  const format = detectFormat(first.value.subarray(0, 64 * 1024), fileName);
+  const first = new ByteQueue();
+  while (first.length < HEAD_BYTES) {
+    const next = await plain.next();
+    if (next.done) break;
+    first.add(next.value);
+  }
+  const head = first.bytes.slice();
+  if (head.length === 0) throw new FileProblem('empty-file', `${fileName}: the file is empty`);
+  const format = detectFormat(head.subarray(0, HEAD_BYTES), fileName);
   if (format === null) {
-    throw new Error(
-      `${fileName}: not a format that can be read; SDF, Molfile, SMILES, CIF, mmCIF, PDB and XYZ can be`,
+    const binary = head.subarray(0, 4096).includes(0);
+    throw new FileProblem(
+      binary ? 'not-text' : 'unknown-format',
+      `${fileName}: ${binary ? 'a binary file' : 'not a format that can be read'}; SDF, Molfile, SMILES, CIF, mmCIF, PDB and XYZ can be`,
     );
   }
   async function* all(): AsyncGenerator<Uint8Array> {
-    yield first.value as Uint8Array;
+    yield head;
     for (;;) {
       const next = await plain.next();
       if (next.done) return;

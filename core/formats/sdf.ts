@@ -4,7 +4,7 @@
 import type { Molecule } from '../chemistry/molecule.ts';
 import { EntryProblem } from './errors.ts';
 import type { DataItem, Entry, Format, Limits, RawEntry } from './format.ts';
-import { LimitError, decodeText, joined } from './lines.ts';
+import { ByteQueue, decodeText, LimitError } from './lines.ts';
 import { LineTable } from './line-table.ts';
 import { readV2000 } from './molfile-v2000.ts';
 import { readV3000 } from './molfile-v3000.ts';
@@ -49,19 +49,19 @@ export const sdfFormat: Format = {
 
 /** Cuts at the terminator lines without looking at anything else; memory is bounded by the largest entry. */
 async function* splitEntries(chunks: AsyncIterable<Uint8Array>, limits: Limits): AsyncGenerator<RawEntry> {
-  let rest: Uint8Array = new Uint8Array(0);
+  const held = new ByteQueue();
   let entry = 0;
-  /** Line on which `rest` begins. */
+  /** Line on which the bytes held begin. */
   let line = 1;
-  /** In `rest`: where the unfinished line begins, and how many lines stand before it. */
-  let scanned = 0;
+  /** In the bytes held: where the unfinished line begins, how far it was looked at, how many lines stand before it. */
+  let lineStart = 0;
+  let i = 0;
   let lines = 0;
   for await (const chunk of chunks) {
     if (chunk.length === 0) continue;
-    const data = rest.length === 0 ? chunk : joined(rest, chunk);
+    held.add(chunk);
+    const data = held.bytes;
     let begin = 0;
-    let lineStart = scanned;
-    let i = scanned;
     for (;;) {
       // Lines are short: a byte loop beats a search for each of the two endings.
       while (i < data.length && data[i] !== LF && data[i] !== CR) i++;
@@ -79,12 +79,14 @@ async function* splitEntries(chunks: AsyncIterable<Uint8Array>, limits: Limits):
       lineStart = end;
       i = end;
     }
-    rest = data.slice(begin);
-    scanned = lineStart - begin;
-    if (rest.length > limits.entryBytes) {
+    held.drop(begin);
+    lineStart -= begin;
+    i -= begin;
+    if (held.length > limits.entryBytes) {
       throw new LimitError(`an entry of more than ${limits.entryBytes} bytes; is a line $$$$ missing?`, line);
     }
   }
+  const rest = held.bytes.slice();
   if (rest.some(byte => byte !== 0x20 && byte !== 0x09 && byte !== LF && byte !== CR)) {
     yield { entry: entry + 1, line, bytes: rest };
   }
