@@ -52,10 +52,17 @@ function readPreferences(): Partial<Preferences> {
 /** How long after the last change the session is written, ms. */
 const SESSION_DELAY = 600;
 
+/** What is said of the residue at a unit, where it is not as its name says. */
+export function findingsOf(model: Model, unit: number): readonly string[] {
+  const atoms = model.docket?.units[unit]?.unit.atoms ?? [];
+  return model.residueFindings.filter(({ atom }) => atoms.includes(atom)).map(({ message }) => message);
+}
+
 /** Whether a unit wants a second look. */
 export function isDoubtful(model: Model, unit: number): boolean {
   const labelled = model.docket?.units[unit];
   if (!labelled || labelled.unit.labile !== null) return false;
+  if (model.residueFindings.some(one => one.doubtful && labelled.unit.atoms.includes(one.atom))) return true;
   const verdict = model.verdicts[unit]?.verdict ?? null;
   if (verdict === 'inverted' || verdict === 'flat' || verdict === 'missing') return true;
   return labelled.unit.state === 'flat' || (model.distorted[unit] ?? null) !== null;

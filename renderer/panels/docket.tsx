@@ -3,7 +3,7 @@ import { useVirtualizer } from '@tanstack/react-virtual';
 import { type KeyboardEvent, type ReactElement, useEffect, useRef } from 'react';
 import { unitName } from '../caption.ts';
 import type { CommandId } from '../commands.ts';
-import { isDoubtful } from '../controller.ts';
+import { findingsOf, isDoubtful } from '../controller.ts';
 import { Glyph } from '../glyph.tsx';
 import { type Mark, judgementOf, unitKey } from '../store.ts';
 import { measure, TEXT } from '../text.ts';
@@ -110,9 +110,11 @@ export function DocketPanel(): ReactElement {
                   {verdict !== null && verdict !== 'open'
                     ? TEXT.verdict[verdict]
                     : labelled.unit.state === 'clear'
-                      ? verdict === 'open'
-                        ? TEXT.verdict.open
-                        : ''
+                      ? model && findingsOf(model, u).length > 0
+                        ? TEXT.residueFinding
+                        : verdict === 'open'
+                          ? TEXT.verdict.open
+                          : ''
                       : labelled.unit.state}
                 </span>
                 <span className="unit-mark">{judgement?.mark ? MARK_SIGNS[judgement.mark] : ''}</span>

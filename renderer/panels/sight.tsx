@@ -9,6 +9,7 @@ import {
   useRef,
 } from 'react';
 import { caption, unitName } from '../caption.ts';
+import { findingsOf } from '../controller.ts';
 import { Glyph } from '../glyph.tsx';
 import { type SightContent, SightView } from '../sight/view.ts';
 import { Surroundings, surroundingsFormat } from '../surroundings/surroundings.ts';
@@ -230,6 +231,7 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
                 {sentence(model.crystal.standing)}
               </span>
             )}
+            {model && findingsOf(model, unit).map(text => <b key={text}> {sentence(text)}</b>)}
             {model?.difference ? <span className="warning"> {model.difference}.</span> : null}
             {labelled && model && (model.distorted[unit] ?? null) !== null ? (
               <span className="warning">

@@ -1,6 +1,7 @@
 /** The judgement of one entry for the window: examined, set against its intention, as a model in full and as a line of the ledger. */
 import type { Molecule } from '../../core/chemistry/molecule.ts';
 import type { EntryComparison, Examined } from '../../core/comparison/compare.ts';
+import { checkResidues } from '../../core/biopolymer/checks.ts';
 import { distortionOf } from '../../core/comparison/distortion.ts';
 import { identityOf } from '../../core/comparison/consistency.ts';
 import { Intention } from '../../core/comparison/intention.ts';
@@ -15,7 +16,7 @@ import { smilesFormat } from '../../core/formats/smiles.ts';
 import { type EntryRecord, entryRecord, unreadableRecord } from '../../core/record/json.ts';
 import type { RecordFigure } from '../../core/record/report.ts';
 import { sightFigure } from '../../core/record/sight-figure.ts';
-import { unitName } from '../caption.ts';
+import { residueName, unitName } from '../caption.ts';
 import type { Finding, Model, Row, ShownVerdict } from './protocol.ts';
 
 /** The intentions of a job, with their structures by name for the drawing. */
@@ -144,6 +145,7 @@ function judge(
     mapping: null,
     distorted: [],
     crystal: null,
+    residueFindings: [],
   };
   if (entry.error || !entry.molecule) {
     const error = entry.error ?? {
@@ -216,6 +218,13 @@ function judgeMolecule(
     intended: structure?.molecule ?? null,
     mapping: comparison?.mapping ?? null,
     distorted: docket.units.map(unit => distortionOf(examined.molecule, unit)),
+    residueFindings: examined.molecule.residues
+      ? checkResidues(examined.molecule).findings.map(({ index, message, kind }) => ({
+          atom: index,
+          message,
+          doubtful: kind !== 'dextro',
+        }))
+      : [],
     crystal: entry.crystal ? crystalRecord(entry.crystal, false) : null,
   };
   return { model, comparison };
@@ -270,6 +279,11 @@ export function rowOf(model: Model): Row {
     verdicts += 'm';
     letters += '·';
   }
+  for (const { atom, doubtful: isDoubtful } of model.residueFindings) {
+    if (!isDoubtful) continue;
+    raise('residue');
+    if (molecule && doubtful.length < MOST_NAMES) doubtful.push(residueName(molecule, atom));
+  }
   if (BAD_RELATIONS.includes(model.relation)) raise('relation');
   return {
     index: model.index,
@@ -296,6 +310,7 @@ const FINDING_ORDER: Readonly<Record<Finding, number>> = {
   inverted: 1,
   missing: 2,
   flat: 3,
-  relation: 4,
-  none: 5,
+  residue: 4,
+  relation: 5,
+  none: 6,
 };

@@ -7,7 +7,7 @@ import type { CrystalRecord } from '../../core/crystal/record.ts';
 import type { DataItem, EntryError } from '../../core/formats/format.ts';
 
 /** What the worst finding of an entry is, most urgent first. */
-export const FINDINGS = ['error', 'inverted', 'missing', 'flat', 'relation', 'none'] as const;
+export const FINDINGS = ['error', 'inverted', 'missing', 'flat', 'residue', 'relation', 'none'] as const;
 export type Finding = (typeof FINDINGS)[number];
 
 /** One line of the ledger: what is kept of every entry, small enough for hundreds of thousands. */
@@ -69,6 +69,13 @@ export interface Model {
   readonly mapping: Int32Array | null;
   /** Firmness that the rings at each unit allow where the measured one is far below it. */
   readonly distorted: readonly (number | null)[];
+  /** Of a macromolecule: where residues differ from what their names say; `atom` is 0-based. */
+  readonly residueFindings: readonly {
+    readonly atom: number;
+    readonly message: string;
+    /** False for what only deserves a mention: a D residue that is named as one. */
+    readonly doubtful: boolean;
+  }[];
   /** What the file says of the crystal and what follows for the absolute structure. */
   readonly crystal: CrystalRecord | null;
 }

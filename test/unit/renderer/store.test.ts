@@ -94,7 +94,13 @@ const row: fc.Arbitrary<Row> = fc.record({
   doubtful: fc.constantFrom('', 'C7'),
   firmness: fc.option(fc.double({ min: 0, max: 1, noNaN: true })),
   relation: fc.constantFrom('same' as const, 'epimer' as const, null),
-  finding: fc.constantFrom('none' as const, 'inverted' as const, 'flat' as const, 'error' as const),
+  finding: fc.constantFrom(
+    'none' as const,
+    'inverted' as const,
+    'flat' as const,
+    'residue' as const,
+    'error' as const,
+  ),
   error: fc.constant(null),
 });
 const query: fc.Arbitrary<LedgerQuery> = fc.record({
