@@ -18,7 +18,10 @@ export function askedUnits(molecule: Molecule, extra: readonly StereoUnit[] = []
   for (const unit of extra) units.set(unitKey(unit), unit);
   const asked: StereoUnit[] = [];
   const open: StereoUnit[] = [];
-  for (const unit of units.values()) (unit.sense === 0 ? open : asked).push(unit);
+  // What turns over by itself is not read from coordinates: a pose's amine or free axis asks for nothing.
+  const free = (unit: StereoUnit): boolean =>
+    unit.sense === 0 || (unit.labile !== null && unit.basis === 'coordinates' && !extra.includes(unit));
+  for (const unit of units.values()) (free(unit) ? open : asked).push(unit);
   return { asked, open };
 }
 

@@ -5,7 +5,7 @@ import type { StereoUnit } from '../perception/unit.ts';
 import { askedUnits, unitName, unitsMissed } from './asked.ts';
 import { type BoundsInput, distanceBounds } from './bounds.ts';
 import { type VolumeConstraints, volumeConstraints, wrongUnits } from './chirality.ts';
-import { embedOnce, type PairBounds, pairBounds, smoothed } from './distance-geometry.ts';
+import { embedOnce, type PairBounds, pairBounds, refinementError, smoothed } from './distance-geometry.ts';
 import { type Part, partsOf } from './fragments.ts';
 import { addHydrogens } from './hydrogens.ts';
 import { type IdealGeometry, idealGeometry } from './ideal-geometry.ts';
@@ -64,6 +64,8 @@ export class PartBuilder {
   readonly geometry: IdealGeometry;
   readonly volumes: VolumeConstraints;
   readonly sep: Uint8Array;
+  /** Holds cumulenes at right angles in the clean-up: MMFF94 has no torsion about a linear row of atoms. */
+  private readonly hold: ((x: Float64Array, g: Float64Array) => number) | null;
   private readonly settled: { bounds: Bounds; pairs: PairBounds; planarity: Planarity } | null;
   /** Reasons for rejected attempts and how often each came. */
   readonly rejected = new Map<string, number>();
@@ -79,6 +81,7 @@ export class PartBuilder {
     this.geometry = idealGeometry(molecule, this.field.field);
     this.volumes = volumeConstraints(molecule, asked, this.geometry);
     this.sep = new Uint8Array(molecule.atomCount ** 2);
+    this.hold = cumuleneHold(asked, this.volumes);
     // With nothing left to chance about flat bonds the bounds are the same for all attempts.
     let drawn = false;
     const shape = this.shape(() => {
@@ -127,14 +130,18 @@ export class PartBuilder {
     const { field } = this.field;
     let energy: number | null = null;
     if (field) {
-      const clean = minimise((at, g) => field.energy(at, g), x, {
+      const hold = this.hold;
+      const objective = hold
+        ? (at: Float64Array, g: Float64Array) => field.energy(at, g) + hold(at, g)
+        : (at: Float64Array, g: Float64Array) => field.energy(at, g);
+      const clean = minimise(objective, x, {
         iterations: CLEAN_ITERATIONS,
         gradient: CLEAN_GRADIENT,
         step: 0.3,
         stall: 1e-5,
       });
       if (!Number.isFinite(clean.value)) return this.reject('the energy could not be minimised');
-      energy = this.field.exact ? clean.value : null;
+      energy = !this.field.exact ? null : hold ? field.energy(x, new Float64Array(x.length)) : clean.value;
     }
     const reason = this.fault(x);
     return reason === null ? { x, energy } : this.reject(reason);
@@ -157,6 +164,27 @@ export class PartBuilder {
     const reasons = [...this.rejected].sort((a, b) => b[1] - a[1]).map(([reason, count]) => `${reason} (${count})`);
     return `no model after ${this.attempts} attempts: ${reasons.join('; ')}`;
   }
+}
+
+/** Weight of the hold on cumulenes, kcal mol⁻¹ Å⁻⁶. */
+const CUMULENE_HOLD = 5;
+const NO_PAIRS: PairBounds = { count: 0, atoms: new Int32Array(0), squares: new Float64Array(0) };
+
+function cumuleneHold(
+  asked: readonly StereoUnit[],
+  volumes: VolumeConstraints,
+): ((x: Float64Array, g: Float64Array) => number) | null {
+  const held: number[] = [];
+  for (let t = 0; t < volumes.count; t++) if (asked[volumes.unit[t]!]!.kind === 'cumulene') held.push(t);
+  if (held.length === 0) return null;
+  const subset: VolumeConstraints = {
+    count: held.length,
+    atoms: Int32Array.from(held.flatMap(t => [...volumes.atoms.subarray(4 * t, 4 * t + 4)])),
+    sign: Int8Array.from(held, t => volumes.sign[t]!),
+    least: Float64Array.from(held, t => volumes.least[t]!),
+    unit: Int32Array.from(held, t => volumes.unit[t]!),
+  };
+  return refinementError(NO_PAIRS, subset, new Int32Array(0), { volume: CUMULENE_HOLD, fourth: 0, flat: 0 }, 3);
 }
 
 /** Parts of a molecule with all hydrogens, each prepared; `units` are numbered as in the whole. */
@@ -246,6 +274,9 @@ export function partWarnings(builder: PartBuilder): string[] {
   const warnings = [...builder.field.warnings];
   if (builder.field.field === null) {
     warnings.push('no force field covers this part: the model satisfies distances and configuration and is not relaxed');
+  }
+  if (builder.asked.some(unit => unit.kind === 'cumulene' && !unit.planar)) {
+    warnings.push('MMFF94 has no torsion about cumulated double bonds; their ends were held near right angles');
   }
   const open = builder.open.filter(unit => unit.labile === null);
   if (open.length > 0) {

@@ -9,6 +9,7 @@ export type Benchmark = (report: (line: string) => void) => Promise<void>;
 const BENCHMARKS: Readonly<Record<string, () => Promise<{ readonly run: Benchmark }>>> = {
   labels: () => import('./labels.ts'),
   check: () => import('./check.ts'),
+  embedding: () => import('./embedding.ts'),
 };
 
 const names = process.argv.slice(2);
