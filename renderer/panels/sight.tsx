@@ -218,6 +218,7 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
         <div className="caption" tabIndex={0} role="region" aria-label={TEXT.captionLabel}>
           <p>
             {words}
+            {model && findingsOf(model, unit).map(text => <b key={text}> {sentence(text)}</b>)}
             {model?.warnings.map(text => (
               <span key={text} className="warning">
                 {' '}
@@ -228,10 +229,9 @@ export function SightPanel({ dark }: { readonly dark: boolean }): ReactElement {
               <span className="crystal">
                 {model.crystal.spaceGroup ? <b>{model.crystal.spaceGroup}</b> : null} {TEXT.absoluteStructure}{' '}
                 <b>{model.crystal.absoluteStructure.replace('-', ' ')}</b>: {model.crystal.reason}.{' '}
-                {sentence(model.crystal.standing)}
+                {molecule?.residues ? null : sentence(model.crystal.standing)}
               </span>
             )}
-            {model && findingsOf(model, unit).map(text => <b key={text}> {sentence(text)}</b>)}
             {model?.difference ? <span className="warning"> {model.difference}.</span> : null}
             {labelled && model && (model.distorted[unit] ?? null) !== null ? (
               <span className="warning">

@@ -143,7 +143,7 @@ export function dialGroup(drawing: DialDrawing): SVGElement {
       element('circle', {
         cx: x,
         cy: y,
-        r: numeral.text.length > 2 ? 2 * NUMERAL : NUMERAL,
+        r: numeral.text.length > 2 ? 9 : NUMERAL,
         class: 'numeral-paper',
       }),
       element(

@@ -178,7 +178,10 @@ async function open(message: Extract<ToWorker, { type: 'open' }>): Promise<void>
       opened = opened.filter((_, f) => flags[f]);
     }
   }
-  if (job !== mine) return;
+  if (isStale(mine)) {
+    stopped(mine);
+    return;
+  }
   files = opened;
   if (given) {
     try {
@@ -188,9 +191,17 @@ async function open(message: Extract<ToWorker, { type: 'open' }>): Promise<void>
       send({ type: 'problem', job: mine, message: words(error) });
     }
   }
-  if (job !== mine) return;
+  if (isStale(mine)) {
+    stopped(mine);
+    return;
+  }
   taken(mine);
   await readFiles(mine);
+}
+
+/** Says that a job ended before anything was read. */
+function stopped(mine: number): void {
+  send({ type: 'progress', job: mine, read: 0, total: 0, entries: 0, done: true, cancelled: true });
 }
 
 function taken(mine: number): void {

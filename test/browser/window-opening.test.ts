@@ -432,6 +432,7 @@ describe('many entries', () => {
 
   test('stopping keeps what was read', async () => {
     const page = await open(many(20_000));
+    await page.locator('.strip-open b').waitFor();
     await page.getByRole('button', { name: 'Stop' }).click();
     await expect.poll(() => page.locator('.head-progress').count()).toBe(0);
     const rows = await page.locator('.strip-open b').textContent();
