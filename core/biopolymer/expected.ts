@@ -214,10 +214,11 @@ export function namedPairs(residue: string): readonly NamedPair[] {
       add(centre, before, next[0]!, `${hydrogen}2`, `${hydrogen}3`, -1);
     });
   }
-  if (NUCLEOTIDES[residue]) {
+  const nucleotide = NUCLEOTIDES[residue];
+  if (nucleotide) {
     pairs.push({ centre: 'P', others: ["O5'", 'OP1'], named: ['OP1', 'OP2'], sign: -1 });
     pairs.push({ centre: "C5'", others: ["O5'", "C4'"], named: ["H5'", "H5''"], sign: 1 });
-    if (NUCLEOTIDES[residue]![1]) {
+    if (nucleotide[1]) {
       pairs.push({ centre: "C2'", others: ["C1'", "C3'"], named: ["H2'", "H2''"], sign: 1 });
     }
   }

@@ -53,7 +53,7 @@ const DROPPED: readonly RegExp[] = [
 ];
 /** Names that may hold descriptors. */
 const NAMES = /^_chemical_name_(?:systematic|common|mineral|structure_type)$/u;
-const DESCRIPTORS = /\b\d*[RS](?:[,\s)\]*\-]|\b)|(?:^|[^A-Za-z])[DL]-|\([+-]\)-/u;
+const DESCRIPTORS = /\b\d*[RS](?:[,\s)\]*-]|\b)|(?:^|[^A-Za-z])[DL]-|\([+-]\)-/u;
 
 /**
  * Inverts every structure of a CIF. The text holds one character for each byte.
@@ -397,7 +397,10 @@ function verify(blocks: readonly CifBlock[], result: string): void {
     const fail = (what: string): never => {
       throw new EntryProblem('inversion-failed', `the inverted structure does not hold: ${what}`, block.line);
     };
-    if (!other) return fail('a block is missing');
+    if (!other) {
+      fail('a block is missing');
+      return;
+    }
     const first = readCoreBlock(block, DEFAULT_LIMITS).molecule;
     const second = readCoreBlock(other, DEFAULT_LIMITS).molecule;
     if (!isInverse(first, second)) fail('distances or hands differ from those of the mirror image');

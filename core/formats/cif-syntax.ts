@@ -68,8 +68,8 @@ export class CifLoop {
     const column = this.names.indexOf(name);
     if (column < 0) return null;
     const count = this.rowCount;
-    const values: (string | null)[] = new Array(count);
-    for (let row = 0; row < count; row++) values[row] = this.value(row, column);
+    const values: (string | null)[] = [];
+    for (let row = 0; row < count; row++) values.push(this.value(row, column));
     return values;
   }
 

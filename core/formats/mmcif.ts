@@ -88,7 +88,7 @@ function readRows(loop: CifLoop): Row[] {
     charge: at('pdbx_formal_charge'),
     model: at('pdbx_pdb_model_num'),
   };
-  const rows: Row[] = new Array(loop.rowCount);
+  const rows: Row[] = [];
   const symbols = new Map<string, number>();
   for (let row = 0; row < loop.rowCount; row++) {
     const read = (column: number): string | null => (column < 0 ? null : loop.value(row, column));
@@ -121,7 +121,7 @@ function readRows(loop: CifLoop): Row[] {
         : read(columns.group) !== 'HETATM' && templateOf(residue) !== null;
     const chain = either(columns.chain, columns.labelChain);
     const labelAtom = either(columns.labelAtom, columns.atom);
-    rows[row] = {
+    rows.push({
       record: {
         name: either(columns.atom, columns.labelAtom),
         element,
@@ -140,7 +140,7 @@ function readRows(loop: CifLoop): Row[] {
       },
       model: read(columns.model) ?? '1',
       place: `${read(columns.labelChain) ?? chain}|${labelNumber ?? read(columns.number) ?? ''}|${labelAtom}`,
-    };
+    });
   }
   return rows;
 }

@@ -11,6 +11,7 @@ import {
   isSohncke,
   operatorKey,
   parseOperator,
+  type SymmetryOperator,
 } from '../../../core/crystal/operator.ts';
 import {
   ENANTIOMORPHIC_PAIRS,
@@ -80,7 +81,7 @@ describe('space groups', () => {
     for (const { number, operators } of groups) {
       const { changesGroup, operators: after } = findInversion(operators);
       const other = groups[enantiomorphOf(number) - 1];
-      const keys = (list: typeof operators): string[] => list.map(operatorKey).sort();
+      const keys = (list: readonly SymmetryOperator[]): string[] => list.map(operatorKey).sort();
       if (changesGroup) expect(keys(after), String(number)).toEqual(keys(other?.operators ?? []));
     }
   });

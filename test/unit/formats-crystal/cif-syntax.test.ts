@@ -133,7 +133,9 @@ describe('broken files', () => {
 describe('values written and read again', () => {
   it('come back whatever they hold', () => {
     const value = fc
-      .string({ unit: fc.constantFrom(...'ab1 ._#;\'"$[]\n') })
+      .string({
+        unit: fc.constantFrom('a', 'b', '1', ' ', '.', '_', '#', ';', "'", '"', '$', '[', ']', '\n'),
+      })
       .filter(text => !text.includes('\n;') && !text.endsWith('\\'));
     fc.assert(
       fc.property(value, fc.nat(2), (text, after) => {

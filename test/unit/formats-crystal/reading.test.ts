@@ -264,7 +264,7 @@ describe('PDB', () => {
 
   it('tells the element from the name where columns 77 and 78 are blank', async () => {
     const atom = (name: string, residue: string): string =>
-      `HETATM    1 ${name}${` ${residue}`} A   1      11.104  -6.134   0.000  1.00  0.00`;
+      `HETATM    1 ${name} ${residue} A   1      11.104  -6.134   0.000  1.00  0.00`;
     const element = async (name: string, residue: string): Promise<number | undefined> =>
       (await readAll(pdbFormat, `${atom(name, residue)}\n`))[0]?.molecule?.elements[0];
     expect(await element(' CA ', 'ALA')).toBe(6);
