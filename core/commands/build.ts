@@ -120,7 +120,9 @@ async function structuresOf(io: CommandIo, source: string): Promise<AsyncIterabl
       if (!(error instanceof SmilesError)) throw error;
       // A name with a dot or a slash was meant as a file more often than as a SMILES.
       const asFile = /\.[A-Za-z0-9]{1,6}$|\.gz$/u.test(source) || source === '-';
-      throw new UsageError(asFile ? problem : `${source}: no file of this name, and not a SMILES: ${error.message}`);
+      throw new UsageError(
+        asFile ? problem : `${source}: no file of this name, and not a SMILES: ${error.message}`,
+      );
     }
   }
   const { entries, format } = opened;
@@ -142,7 +144,8 @@ export function buildOne(
   options: BuildOptions,
   signal?: AbortSignal,
 ): { readonly entries: readonly string[]; readonly notes: readonly string[]; readonly failed: boolean } {
-  if (structure.molecule === null) return { entries: [], notes: [structure.error ?? 'no structure'], failed: true };
+  if (structure.molecule === null)
+    return { entries: [], notes: [structure.error ?? 'no structure'], failed: true };
   const notes: string[] = [];
   const entries: string[] = [];
   let failed = false;

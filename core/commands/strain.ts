@@ -63,7 +63,9 @@ export async function run(args: readonly string[], io: CommandIo): Promise<numbe
       try {
         if (!entry.molecule) throw new Error(entry.error?.message ?? 'no structure');
         const { total, terms, warnings } = poseEnergy(entry.molecule, tables);
-        const strain = withStrain ? poseStrain(entry.molecule, tables, { count, seed, signal: io.signal }) : null;
+        const strain = withStrain
+          ? poseStrain(entry.molecule, tables, { count, seed, signal: io.signal })
+          : null;
         const notes = [...entry.warnings, ...(strain?.warnings ?? warnings)];
         if (json) {
           const record = {
@@ -71,7 +73,13 @@ export async function run(args: readonly string[], io: CommandIo): Promise<numbe
             total,
             ...(withTerms ? { terms } : {}),
             ...(strain
-              ? { held: strain.held, best: strain.best, strain: strain.strain, movement: strain.movement, conformers: strain.conformers }
+              ? {
+                  held: strain.held,
+                  best: strain.best,
+                  strain: strain.strain,
+                  movement: strain.movement,
+                  conformers: strain.conformers,
+                }
               : {}),
             warnings: notes,
             error: null,
@@ -79,7 +87,9 @@ export async function run(args: readonly string[], io: CommandIo): Promise<numbe
           await io.out(`${JSON.stringify(record)}\n`);
         } else {
           const parts = [`${entry.entry}`, entry.name, total.toFixed(3)];
-          if (withTerms) for (const [kind, value] of Object.entries(terms)) parts.push(`${kind} ${Number(value).toFixed(3)}`);
+          if (withTerms)
+            for (const [kind, value] of Object.entries(terms))
+              parts.push(`${kind} ${Number(value).toFixed(3)}`);
           if (strain) {
             parts.push(
               `held ${strain.held.toFixed(3)}`,

@@ -57,7 +57,8 @@ export function heavyAutomorphisms(molecule: Molecule, limit = 256): HeavyAutomo
     for (const candidate of candidates) {
       if (used[candidate] || classes[heavy[candidate]!] !== classes[heavy[atom]!]) continue;
       if (near[candidate]!.length !== near[atom]!.length) continue;
-      if (near[atom]!.some(other => image[other]! >= 0 && !near[candidate]!.includes(image[other]!))) continue;
+      if (near[atom]!.some(other => image[other]! >= 0 && !near[candidate]!.includes(image[other]!)))
+        continue;
       image[atom] = candidate;
       used[candidate] = 1;
       place1(depth + 1);

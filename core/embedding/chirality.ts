@@ -102,7 +102,12 @@ export function volumeAt(constraints: VolumeConstraints, t: number, x: Float64Ar
 }
 
 /** Units whose volume has the wrong sign or less than `share` of the least size. */
-export function wrongUnits(constraints: VolumeConstraints, x: Float64Array, stride: number, share: number): number[] {
+export function wrongUnits(
+  constraints: VolumeConstraints,
+  x: Float64Array,
+  stride: number,
+  share: number,
+): number[] {
   const wrong: number[] = [];
   for (let t = 0; t < constraints.count; t++) {
     if (constraints.sign[t]! * volumeAt(constraints, t, x, stride) < share * constraints.least[t]!) {

@@ -2,7 +2,7 @@
 import type { Molecule } from '../chemistry/molecule.ts';
 import { superpose } from '../geometry/superposition.ts';
 import { type HeavyAutomorphisms, heavyAutomorphisms } from './automorphisms.ts';
-import { type EmbedOptions, joined, type Model, partWarnings, prepare } from './embed.ts';
+import { embed, type EmbedOptions, joined, type Model, partWarnings, prepare } from './embed.ts';
 import { seededRandom } from './random.ts';
 import type { EmbeddingTables } from './resources.ts';
 
@@ -35,7 +35,11 @@ const TRIES_PER_CONFORMER = 4;
 const FIRST_TRIES = 30;
 
 /** Heavy-atom deviation in Å of two sets of coordinates after superposition, the least over the mappings. */
-export function symmetricRmsd(symmetry: HeavyAutomorphisms, first: Float64Array, second: Float64Array): number {
+export function symmetricRmsd(
+  symmetry: HeavyAutomorphisms,
+  first: Float64Array,
+  second: Float64Array,
+): number {
   const fixed = picked(symmetry.atoms, first);
   const moving = new Float64Array(fixed.length);
   let best = Number.POSITIVE_INFINITY;
@@ -63,8 +67,16 @@ interface Found {
 }
 
 /** Conformers of a molecule with the configuration stated; of a salt, those of its largest part with one model of each other part. */
-export function conformers(molecule: Molecule, tables: EmbeddingTables, options: ConformerOptions): EnsembleResult {
+export function conformers(
+  molecule: Molecule,
+  tables: EmbeddingTables,
+  options: ConformerOptions,
+): EnsembleResult {
   if (molecule.atomCount === 0) return { ok: false, reason: 'the molecule has no atoms', attempts: 0 };
+  if (options.count === 1) {
+    const one = embed(molecule, tables, options);
+    return one.ok ? { ok: true, models: [one], dropped: 0, cancelled: false } : one;
+  }
   const { full, parts } = prepare(molecule, tables, options.units);
   const random = seededRandom(options.seed ?? 1);
   const largest = parts.reduce((a, b) => (b.part.atoms.length > a.part.atoms.length ? b : a));
@@ -78,7 +90,8 @@ export function conformers(molecule: Molecule, tables: EmbeddingTables, options:
     const wanted = each === largest ? options.count : 1;
     const kept: Found[] = [];
     const symmetry = wanted > 1 ? heavyAutomorphisms(builder.molecule) : null;
-    const most = wanted === 1 ? (options.attempts ?? FIRST_TRIES) : FIRST_TRIES + TRIES_PER_CONFORMER * wanted;
+    const most =
+      wanted === 1 ? (options.attempts ?? FIRST_TRIES) : FIRST_TRIES + TRIES_PER_CONFORMER * wanted;
     while (kept.length < wanted && builder.attempts < most) {
       if (options.signal?.aborted) {
         cancelled = true;
@@ -89,12 +102,15 @@ export function conformers(molecule: Molecule, tables: EmbeddingTables, options:
       options.progress?.(kept.length, wanted);
       if (found === null) continue;
       const limit = options.rmsd ?? DEFAULT_RMSD;
-      const alike = symmetry ? kept.findIndex(other => symmetricRmsd(symmetry, other.x, found.x) < limit) : -1;
+      const alike = symmetry
+        ? kept.findIndex(other => symmetricRmsd(symmetry, other.x, found.x) < limit)
+        : -1;
       if (alike < 0) kept.push(found);
       else {
         dropped++;
         const other = kept[alike]!;
-        if (found.energy !== null && other.energy !== null && found.energy < other.energy) kept[alike] = found;
+        if (found.energy !== null && other.energy !== null && found.energy < other.energy)
+          kept[alike] = found;
       }
     }
     attempts += builder.attempts;
@@ -110,7 +126,8 @@ export function conformers(molecule: Molecule, tables: EmbeddingTables, options:
     ensembles.push({ atoms: part.atoms, list: within });
     warnings.push(...partWarnings(builder));
   }
-  if (parts.length > 1) warnings.push(`${parts.length} separate parts are set side by side; their places mean nothing`);
+  if (parts.length > 1)
+    warnings.push(`${parts.length} separate parts are set side by side; their places mean nothing`);
   const count = Math.max(...ensembles.map(({ list }) => list.length));
   const models = Array.from({ length: count }, (_, c): Model => {
     const chosen = ensembles.map(({ atoms, list }) => ({ atoms, ...list[Math.min(c, list.length - 1)]! }));

@@ -193,10 +193,20 @@ export function refinementError(
       }
     }
     for (let t = 0; t < volumes.count; t++) {
-      error += volumeTerm(volumes.atoms, 4 * t, x, g, stride, weights.volume, volumes.sign[t]!, 1.6 * volumes.least[t]!);
+      error += volumeTerm(
+        volumes.atoms,
+        4 * t,
+        x,
+        g,
+        stride,
+        weights.volume,
+        volumes.sign[t]!,
+        1.6 * volumes.least[t]!,
+      );
     }
     if (weights.flat > 0) {
-      for (let t = 0; t < flatAtoms.length; t += 4) error += volumeTerm(flatAtoms, t, x, g, stride, weights.flat, 0, 0);
+      for (let t = 0; t < flatAtoms.length; t += 4)
+        error += volumeTerm(flatAtoms, t, x, g, stride, weights.flat, 0, 0);
     }
     if (four) {
       for (let i = 3; i < x.length; i += 4) {
@@ -297,19 +307,27 @@ export function embedOnce(
     x[3 * i + 1] = x4[4 * i + 1]!;
     x[3 * i + 2] = x4[4 * i + 2]!;
   }
-  const { value } = minimise(refinementError(pairs, volumes, flatAtoms, { volume: 0.3, fourth: 0, flat: 0.1 }, 3), x, {
-    iterations: 200,
-    gradient: 1e-3,
-    step: 0.3,
-    stall: 1e-4,
-  });
+  const { value } = minimise(
+    refinementError(pairs, volumes, flatAtoms, { volume: 0.3, fourth: 0, flat: 0.1 }, 3),
+    x,
+    {
+      iterations: 200,
+      gradient: 1e-3,
+      step: 0.3,
+      stall: 1e-4,
+    },
+  );
   return { x, error: value };
 }
 
 /** Smooths bounds; where they contradict, the contacts yield step by step. Returns null when even that fails. */
 export function smoothed(raw: Bounds, sep: Uint8Array): Bounds | null {
   const { n } = raw;
-  for (const [slack, share] of [[0.02, 1], [0.1, 0.6], [0.5, 0.3]] as const) {
+  for (const [slack, share] of [
+    [0.02, 1],
+    [0.1, 0.6],
+    [0.5, 0.3],
+  ] as const) {
     const lower = raw.lower.slice();
     if (share < 1) for (let t = 0; t < n * n; t++) if (sep[t] === 0 || sep[t]! > 3) lower[t]! *= share;
     const bounds: Bounds = { n, lower, upper: raw.upper.slice() };

@@ -1,5 +1,5 @@
 /** From a graph with a configuration to relaxed coordinates in space: distance geometry, rejection, MMFF94 clean-up, check. */
-import type { Molecule } from '../chemistry/molecule.ts';
+import { degree, type Molecule } from '../chemistry/molecule.ts';
 import { type RingInfo, ringInfo } from '../chemistry/rings.ts';
 import type { StereoUnit } from '../perception/unit.ts';
 import { askedUnits, unitName, unitsMissed } from './asked.ts';
@@ -22,6 +22,8 @@ export interface EmbedOptions {
   readonly seed?: number;
   /** Most attempts at each connected part; 30 when left out. */
   readonly attempts?: number;
+  /** Starts of which the one lowest in energy is relaxed to the end; 5 when left out. */
+  readonly starts?: number;
   /** Units that replace or add to those of the molecule, with explicit hydrogens as ligands where they have become atoms. */
   readonly units?: readonly StereoUnit[];
   /** Aborts between attempts. */
@@ -53,6 +55,17 @@ const RELAXED_SHARE = 0.35;
 /** Clean-up ends at this root mean square gradient, kcal mol⁻¹ Å⁻¹. */
 const CLEAN_GRADIENT = 0.02;
 const CLEAN_ITERATIONS = 1500;
+/** The same for telling starts apart. */
+const COARSE_GRADIENT = 0.5;
+const COARSE_ITERATIONS = 80;
+/** Starts of which the lowest is relaxed to the end. */
+const DEFAULT_STARTS = 5;
+
+/** Coordinates in Å and their energy in kcal/mol, null where MMFF94 does not cover the molecule. */
+export interface Start {
+  readonly x: Float64Array;
+  readonly energy: number | null;
+}
 
 /** A connected part, prepared for as many attempts as are wanted. */
 export class PartBuilder {
@@ -113,8 +126,27 @@ export class PartBuilder {
     return null;
   }
 
+  /** No acyclic bond about which heavy atoms turn, and no ring that could pucker: one start is as good as another. */
+  get isRigid(): boolean {
+    const { molecule, rings, field } = this;
+    if (field.field === null) return true;
+    for (let b = 0; b < molecule.bondCount; b++) {
+      if (molecule.bondOrders[b] !== 1 || field.field.typing.aromatic.bonds[b] === 1) continue;
+      const i = molecule.bondAtoms[2 * b]!;
+      const j = molecule.bondAtoms[2 * b + 1]!;
+      if (molecule.elements[i] === 1 || molecule.elements[j] === 1) continue;
+      if (
+        rings.bondInRing[b] === 1
+          ? rings.bondRingSize[b]! > 5
+          : degree(molecule, i) > 1 && degree(molecule, j) > 1
+      )
+        return false;
+    }
+    return true;
+  }
+
   /** One attempt: coordinates in Å and the energy, or null with the reason noted. */
-  attempt(random: () => number): { readonly x: Float64Array; readonly energy: number | null } | null {
+  attempt(random: () => number, coarse = false): Start | null {
     this.attempts++;
     const { molecule } = this;
     const n = molecule.atomCount;
@@ -125,8 +157,14 @@ export class PartBuilder {
     const { x, error } = embedOnce(ready.bounds, ready.pairs, this.volumes, flat, random, this.attempts > 1);
     if (!(error < ERROR_PER_ATOM * n)) return this.reject('distances could not be satisfied');
     const wrong = wrongUnits(this.volumes, x, 3, RAW_SHARE);
-    if (wrong.length > 0) return this.reject(`${unitName(this.asked[wrong[0]!]!)} would not take the hand asked for`);
+    if (wrong.length > 0)
+      return this.reject(`${unitName(this.asked[wrong[0]!]!)} would not take the hand asked for`);
     if (piercedRings(molecule, this.rings, x) > 0) return this.reject('a bond passes through a ring');
+    return this.relaxed(x, coarse);
+  }
+
+  /** Cleans coordinates up (only roughly when `coarse`, to tell starts apart) and checks them. */
+  relaxed(x: Float64Array, coarse = false): Start | null {
     const { field } = this.field;
     let energy: number | null = null;
     if (field) {
@@ -135,8 +173,8 @@ export class PartBuilder {
         ? (at: Float64Array, g: Float64Array) => field.energy(at, g) + hold(at, g)
         : (at: Float64Array, g: Float64Array) => field.energy(at, g);
       const clean = minimise(objective, x, {
-        iterations: CLEAN_ITERATIONS,
-        gradient: CLEAN_GRADIENT,
+        iterations: coarse ? COARSE_ITERATIONS : CLEAN_ITERATIONS,
+        gradient: coarse ? COARSE_GRADIENT : CLEAN_GRADIENT,
         step: 0.3,
         stall: 1e-5,
       });
@@ -161,7 +199,9 @@ export class PartBuilder {
 
   /** Why no attempt succeeded. */
   refusal(): string {
-    const reasons = [...this.rejected].sort((a, b) => b[1] - a[1]).map(([reason, count]) => `${reason} (${count})`);
+    const reasons = [...this.rejected]
+      .sort((a, b) => b[1] - a[1])
+      .map(([reason, count]) => `${reason} (${count})`);
     return `no model after ${this.attempts} attempts: ${reasons.join('; ')}`;
   }
 }
@@ -184,7 +224,13 @@ function cumuleneHold(
     least: Float64Array.from(held, t => volumes.least[t]!),
     unit: Int32Array.from(held, t => volumes.unit[t]!),
   };
-  return refinementError(NO_PAIRS, subset, new Int32Array(0), { volume: CUMULENE_HOLD, fourth: 0, flat: 0 }, 3);
+  return refinementError(
+    NO_PAIRS,
+    subset,
+    new Int32Array(0),
+    { volume: CUMULENE_HOLD, fourth: 0, flat: 0 },
+    3,
+  );
 }
 
 /** Parts of a molecule with all hydrogens, each prepared; `units` are numbered as in the whole. */
@@ -254,10 +300,19 @@ export function embed(molecule: Molecule, tables: EmbeddingTables, options: Embe
   let attempts = 0;
   const warnings: string[] = [];
   for (const { part, builder } of parts) {
-    let found: ReturnType<PartBuilder['attempt']> = null;
-    while (found === null && builder.attempts < most) {
-      if (options.signal?.aborted) return { ok: false, reason: 'cancelled', attempts: attempts + builder.attempts };
-      found = builder.attempt(random);
+    const wanted = builder.isRigid ? 1 : (options.starts ?? DEFAULT_STARTS);
+    const starts: Start[] = [];
+    while (starts.length < wanted && builder.attempts < most) {
+      if (options.signal?.aborted)
+        return { ok: false, reason: 'cancelled', attempts: attempts + builder.attempts };
+      const start = builder.attempt(random, wanted > 1);
+      if (start !== null) starts.push(start);
+    }
+    starts.sort((a, b) => (a.energy ?? 0) - (b.energy ?? 0));
+    let found = starts[0] ?? null;
+    if (wanted > 1) {
+      found = null;
+      for (let s = 0; found === null && s < starts.length; s++) found = builder.relaxed(starts[s]!.x);
     }
     attempts += builder.attempts;
     if (found === null) return { ok: false, reason: builder.refusal(), attempts };
@@ -265,7 +320,8 @@ export function embed(molecule: Molecule, tables: EmbeddingTables, options: Embe
     warnings.push(...partWarnings(builder));
     done.push({ atoms: part.atoms, x: found.x });
   }
-  if (parts.length > 1) warnings.push(`${parts.length} separate parts are set side by side; their places mean nothing`);
+  if (parts.length > 1)
+    warnings.push(`${parts.length} separate parts are set side by side; their places mean nothing`);
   return { ok: true, molecule: joined(full, done), energy, warnings, attempts };
 }
 
@@ -273,10 +329,14 @@ export function embed(molecule: Molecule, tables: EmbeddingTables, options: Embe
 export function partWarnings(builder: PartBuilder): string[] {
   const warnings = [...builder.field.warnings];
   if (builder.field.field === null) {
-    warnings.push('no force field covers this part: the model satisfies distances and configuration and is not relaxed');
+    warnings.push(
+      'no force field covers this part: the model satisfies distances and configuration and is not relaxed',
+    );
   }
   if (builder.asked.some(unit => unit.kind === 'cumulene' && !unit.planar)) {
-    warnings.push('MMFF94 has no torsion about cumulated double bonds; their ends were held near right angles');
+    warnings.push(
+      'MMFF94 has no torsion about cumulated double bonds; their ends were held near right angles',
+    );
   }
   const open = builder.open.filter(unit => unit.labile === null);
   if (open.length > 0) {

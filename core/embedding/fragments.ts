@@ -41,7 +41,9 @@ export function partsOf(molecule: Molecule): Part[] {
         isotopes: pick(new Uint16Array(size), molecule.isotopes),
         radicals: pick(new Uint8Array(size), molecule.radicals),
         hydrogens: pick(new Uint8Array(size), molecule.hydrogens),
-        bondAtoms: Uint32Array.from(bonds.flatMap(b => [place[molecule.bondAtoms[2 * b]!]!, place[molecule.bondAtoms[2 * b + 1]!]!])),
+        bondAtoms: Uint32Array.from(
+          bonds.flatMap(b => [place[molecule.bondAtoms[2 * b]!]!, place[molecule.bondAtoms[2 * b + 1]!]!]),
+        ),
         bondOrders: Uint8Array.from(bonds, b => molecule.bondOrders[b]!),
         bondMarks: Uint8Array.from(bonds, b => molecule.bondMarks[b]!),
         coordinates: molecule.coordinates

@@ -7,7 +7,15 @@ import {
 } from '../chemistry/molecule.ts';
 
 /** Length of a bond to an added hydrogen, Å: usual values for C-H, N-H, O-H, S-H, others (common practice, no source). */
-const LENGTHS: Readonly<Record<number, number>> = { 6: 1.09, 7: 1.01, 8: 0.97, 16: 1.34, 15: 1.42, 14: 1.48, 5: 1.19 };
+const LENGTHS: Readonly<Record<number, number>> = {
+  6: 1.09,
+  7: 1.01,
+  8: 0.97,
+  16: 1.34,
+  15: 1.42,
+  14: 1.48,
+  5: 1.19,
+};
 const DEFAULT_LENGTH = 1.3;
 
 /** The molecule with every hydrogen listed; the atoms it had keep their numbers, added ones follow in order of their parents. */
@@ -59,7 +67,9 @@ export function addHydrogens(molecule: Molecule): Molecule {
     bondOrders,
     bondMarks: widen(new Uint8Array(bondOrders.length), molecule.bondMarks),
     coordinates,
-    labels: molecule.labels ? [...molecule.labels, ...Array.from({ length: added }, (_, h) => `H${n + h + 1}`)] : null,
+    labels: molecule.labels
+      ? [...molecule.labels, ...Array.from({ length: added }, (_, h) => `H${n + h + 1}`)]
+      : null,
     stated: molecule.stated.map(stereo => withHydrogens(stereo, firstHydrogen)),
     residues: null,
     uncertainty: null,
@@ -75,7 +85,10 @@ function withHydrogens(stereo: StatedStereo, first: Int32Array): StatedStereo {
   const { kind } = stereo;
   if (kind === 'centre') {
     const [a, b, c, d] = stereo.ligands;
-    return { ...stereo, ligands: [real(a, stereo.atom), real(b, stereo.atom), real(c, stereo.atom), real(d, stereo.atom)] };
+    return {
+      ...stereo,
+      ligands: [real(a, stereo.atom), real(b, stereo.atom), real(c, stereo.atom), real(d, stereo.atom)],
+    };
   }
   if (kind === 'double-bond') {
     return {
@@ -130,18 +143,25 @@ function openDirections(units: readonly number[][], count: number, planar: boole
   const sum = [0, 1, 2].map(c => -units.reduce((total, u) => total + u[c]!, 0));
   const axis = unit(sum) ?? (units[0] ? perpendicular(units[0]) : [0, 0, 1]);
   if (count === 1 && units.length !== 1) return [axis];
-  const ring = (angle: number, n: number, around: readonly number[], start: readonly number[]): number[][] => {
+  const ring = (
+    angle: number,
+    n: number,
+    around: readonly number[],
+    start: readonly number[],
+  ): number[][] => {
     const side = cross(around, start);
     return Array.from({ length: n }, (_, k) => {
       const phi = (2 * Math.PI * k) / n;
       return [0, 1, 2].map(
         c =>
-          Math.cos(angle) * around[c]! + Math.sin(angle) * (Math.cos(phi) * start[c]! + Math.sin(phi) * side[c]!),
+          Math.cos(angle) * around[c]! +
+          Math.sin(angle) * (Math.cos(phi) * start[c]! + Math.sin(phi) * side[c]!),
       );
     });
   };
   const tetrahedral = Math.acos(1 / 3);
-  if (units.length === 0) return [axis, ...ring(Math.PI - tetrahedral, 3, axis, perpendicular(axis))].slice(0, count);
+  if (units.length === 0)
+    return [axis, ...ring(Math.PI - tetrahedral, 3, axis, perpendicular(axis))].slice(0, count);
   if (units.length === 1) {
     if (planar) return ring(Math.PI / 3, 2, axis, perpendicular(axis)).slice(0, count);
     return ring(tetrahedral, 3, axis, perpendicular(axis)).slice(0, count);

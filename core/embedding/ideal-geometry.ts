@@ -23,7 +23,8 @@ export function idealGeometry(molecule: Molecule, field: Mmff94 | null): IdealGe
   }
   if (field) {
     const angles = new Float64Array(angleStart[molecule.atomCount]!);
-    for (let t = 0; t < angles.length; t++) angles[t] = field.angles.linear[t] === 1 ? Math.PI : field.angles.ideal[t]! * RADIANS;
+    for (let t = 0; t < angles.length; t++)
+      angles[t] = field.angles.linear[t] === 1 ? Math.PI : field.angles.ideal[t]! * RADIANS;
     return { lengths: field.bonds.length, angles, angleStart };
   }
   const lengths = new Float64Array(molecule.bondCount);
@@ -35,7 +36,8 @@ export function idealGeometry(molecule: Molecule, field: Mmff94 | null): IdealGe
     );
   }
   const angles = new Float64Array(angleStart[molecule.atomCount]!);
-  for (let i = 0; i < molecule.atomCount; i++) angles.fill(plainAngle(molecule, i), angleStart[i], angleStart[i + 1]);
+  for (let i = 0; i < molecule.atomCount; i++)
+    angles.fill(plainAngle(molecule, i), angleStart[i], angleStart[i + 1]);
   return { lengths, angles, angleStart };
 }
 
@@ -49,8 +51,8 @@ function plainAngle(molecule: Molecule, atom: number): number {
   const z = molecule.elements[atom]!;
   if (neighbours >= 4) return TETRAHEDRAL;
   if (neighbours === 2 && excess === 2 && z === 6) return Math.PI;
-  if (excess > 0 && z < 15) return 2 * Math.PI / 3;
-  if (z === 5 || z === 13) return 2 * Math.PI / 3;
+  if (excess > 0 && z < 15) return (2 * Math.PI) / 3;
+  if (z === 5 || z === 13) return (2 * Math.PI) / 3;
   return z > 14 ? 100 * RADIANS : TETRAHEDRAL;
 }
 

@@ -53,7 +53,12 @@ export function enumerateIsomers(
     unit => unit.sense === 0 && unit.labile === null && canState(unit),
   );
   const limit = options.limit ?? DEFAULT_LIMIT;
-  const isomers: { molecule: Molecule; units: readonly LabelledUnit[]; intention: Intention; enantiomer: number | null }[] = [];
+  const isomers: {
+    molecule: Molecule;
+    units: readonly LabelledUnit[];
+    intention: Intention;
+    enantiomer: number | null;
+  }[] = [];
   const impossible: { molecule: Molecule; reason: string }[] = [];
   const count = Math.min(open.length, MOST_UNITS);
   let truncated = open.length > MOST_UNITS;
@@ -67,16 +72,32 @@ export function enumerateIsomers(
       break;
     }
     const stated = open.slice(0, count).map((unit, u) => statement(unit, (mask >> u) & 1 ? -1 : 1));
-    const candidate: Molecule = { ...bare, stated: [...bare.stated, ...stated], dimension: 0, coordinates: null };
+    const candidate: Molecule = {
+      ...bare,
+      stated: [...bare.stated, ...stated],
+      dimension: 0,
+      coordinates: null,
+    };
     const docket = examine(candidate);
     const known = (other: { intention: Intention }): Relation =>
-      compareEntry({ molecule: candidate, docket }, other.intention, again => ({ molecule: again, docket: examine(again) }))
-        .relation;
+      compareEntry({ molecule: candidate, docket }, other.intention, again => ({
+        molecule: again,
+        docket: examine(again),
+      })).relation;
     const relations = isomers.map(known);
     if (relations.includes('same')) continue;
-    if (impossible.some(({ molecule: other }) => known({ intention: new Intention('', other, examine(other)) }) === 'same')) continue;
+    if (
+      impossible.some(
+        ({ molecule: other }) => known({ intention: new Intention('', other, examine(other)) }) === 'same',
+      )
+    )
+      continue;
     if (options.test !== false) {
-      const built = embed(candidate, tables, { ...options, attempts: options.attempts ?? TEST_ATTEMPTS });
+      const built = embed(candidate, tables, {
+        starts: 1,
+        ...options,
+        attempts: options.attempts ?? TEST_ATTEMPTS,
+      });
       if (!built.ok) {
         impossible.push({ molecule: candidate, reason: built.reason });
         continue;
@@ -108,7 +129,9 @@ export function enumerateIsomers(
 function stripped(molecule: Molecule): Molecule {
   if (molecule.dimension === 0) return molecule;
   // What a drawing says is kept as statements.
-  const drawn = perceiveUnits(molecule, DEFAULT_SETTINGS).units.filter(unit => unit.sense !== 0 && canState(unit));
+  const drawn = perceiveUnits(molecule, DEFAULT_SETTINGS).units.filter(
+    unit => unit.sense !== 0 && canState(unit),
+  );
   return {
     ...molecule,
     dimension: 0,

@@ -47,7 +47,8 @@ export function minimise(objective: Objective, x: Float64Array, options: Minimis
   for (let iteration = 0; iteration < options.iterations; iteration++) {
     let square = 0;
     for (let i = 0; i < n; i++) square += g[i]! * g[i]!;
-    if (square <= limit || value <= target) return { value, converged: true, iterations: iteration, evaluations };
+    if (square <= limit || value <= target)
+      return { value, converged: true, iterations: iteration, evaluations };
     if (iteration % 10 === 9) {
       if (options.stall && earlier - value < options.stall * Math.max(1, Math.abs(value))) {
         return { value, converged: true, iterations: iteration, evaluations };

@@ -26,7 +26,8 @@ export function planarity(
   const cis = new Map<number, boolean>();
   const asked = new Map<number, StereoUnit>();
   for (const unit of units) {
-    if (unit.kind === 'double-bond' && unit.sense !== 0) asked.set(torsionKey(n, unit.atoms[0]!, unit.atoms[1]!), unit);
+    if (unit.kind === 'double-bond' && unit.sense !== 0)
+      asked.set(torsionKey(n, unit.atoms[0]!, unit.atoms[1]!), unit);
   }
   for (let b = 0; b < molecule.bondCount; b++) {
     const j = bondAtoms[2 * b]!;
@@ -43,11 +44,13 @@ export function planarity(
     let together: boolean | null = null;
     const unit = asked.get(torsionKey(n, j, k));
     if (unit) {
-      const [p, q] = unit.ends[0]!.atom === j ? [unit.ends[0]!, unit.ends[1]!] : [unit.ends[1]!, unit.ends[0]!];
+      const [p, q] =
+        unit.ends[0]!.atom === j ? [unit.ends[0]!, unit.ends[1]!] : [unit.ends[1]!, unit.ends[0]!];
       const first = p.ligands.find(ligand => ligand >= 0);
       const second = q.ligands.find(ligand => ligand >= 0);
       if (first !== undefined && second !== undefined) {
-        const swaps = p.ligands.indexOf(first) + q.ligands.indexOf(second) + js.indexOf(first) + ks.indexOf(second);
+        const swaps =
+          p.ligands.indexOf(first) + q.ligands.indexOf(second) + js.indexOf(first) + ks.indexOf(second);
         together = (unit.sense === 1) === (swaps % 2 === 0);
       }
     }
@@ -105,7 +108,8 @@ function isTrigonal(molecule: Molecule, atom: number): boolean {
 function amideEnd(molecule: Molecule, carbon: number, hetero: number): boolean {
   if (molecule.elements[carbon] !== 6 || degree(molecule, carbon) !== 3) return false;
   const z = molecule.elements[hetero];
-  if (!(z === 7 && degree(molecule, hetero) === 3) && !(z === 8 && degree(molecule, hetero) === 2)) return false;
+  if (!(z === 7 && degree(molecule, hetero) === 3) && !(z === 8 && degree(molecule, hetero) === 2))
+    return false;
   for (let k = molecule.neighbourStart[carbon]!; k < molecule.neighbourStart[carbon + 1]!; k++) {
     const other = molecule.neighbours[k]!;
     if (other !== hetero && molecule.bondOrders[molecule.neighbourBonds[k]!] === 2) {

@@ -96,7 +96,8 @@ export function collisions(molecule: Molecule, sep: Uint8Array, x: Float64Array)
       const d = sep[i * n + j]!;
       if (d > 0 && d < 4) continue;
       const h = (molecule.elements[i] === 1 ? 1 : 0) + (molecule.elements[j] === 1 ? 1 : 0);
-      const least = h === 2 ? LEAST_CONTACT.hydrogens : h === 1 ? LEAST_CONTACT.withHydrogen : LEAST_CONTACT.heavy;
+      const least =
+        h === 2 ? LEAST_CONTACT.hydrogens : h === 1 ? LEAST_CONTACT.withHydrogen : LEAST_CONTACT.heavy;
       const dx = x[3 * i]! - x[3 * j]!;
       const dy = x[3 * i + 1]! - x[3 * j + 1]!;
       const dz = x[3 * i + 2]! - x[3 * j + 2]!;

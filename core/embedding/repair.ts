@@ -38,20 +38,37 @@ const LEAST_SHARE = 0.6;
 const TRIALS = 4;
 
 /** Gives a pose in space the senses of `wanted` (ligands as the pose numbers them); other units keep theirs. @throws RangeError without coordinates in space. */
-export function repairPose(molecule: Molecule, wanted: readonly StereoUnit[], tables: EmbeddingTables, seed = 1): RepairResult {
-  if (molecule.dimension !== 3 || !molecule.coordinates) throw new RangeError('a repair needs a pose in space');
+export function repairPose(
+  molecule: Molecule,
+  wanted: readonly StereoUnit[],
+  tables: EmbeddingTables,
+  seed = 1,
+): RepairResult {
+  if (molecule.dimension !== 3 || !molecule.coordinates)
+    throw new RangeError('a repair needs a pose in space');
   const full = addHydrogens(molecule);
   const places = full.coordinates!;
   const n = full.atomCount;
   // Units of the pose with its hydrogens listed; those wanted replace them, ligands in the order of the pose.
-  const { asked } = askedUnits(full, wanted.map(unit => inFull(unit, full)));
+  const { asked } = askedUnits(
+    full,
+    wanted.map(unit => inFull(unit, full)),
+  );
   const wrongBefore = unitsMissed({ ...full, stated: [] }, asked);
   const building = buildingField(full, tables.mmff94);
   const energyOf = (x: Float64Array): number | null =>
     building.exact && building.field ? building.field.energy(x, new Float64Array(x.length)) : null;
   const before = energyOf(places);
   if (wrongBefore.length === 0) {
-    return { ok: true, molecule: full, repaired: [], before, after: before, movement: 0, warnings: building.warnings };
+    return {
+      ok: true,
+      molecule: full,
+      repaired: [],
+      before,
+      after: before,
+      movement: 0,
+      warnings: building.warnings,
+    };
   }
   const rings = ringInfo(full);
   const geometry = idealGeometry(full, building.field);
@@ -59,8 +76,12 @@ export function repairPose(molecule: Molecule, wanted: readonly StereoUnit[], ta
   const random = seededRandom(seed);
   const flat = planarity(full, rings, building.field, asked, () => 0);
   const sep = new Uint8Array(n * n);
-  const bounds = distanceBounds({ molecule: full, rings, geometry, planarBonds: flat.planarBonds, cis: flat.cis }, sep);
-  if (smooth(bounds, 0.5) !== null) return { ok: false, reason: 'the bounds on distances contradict each other' };
+  const bounds = distanceBounds(
+    { molecule: full, rings, geometry, planarBonds: flat.planarBonds, cis: flat.cis },
+    sep,
+  );
+  if (smooth(bounds, 0.5) !== null)
+    return { ok: false, reason: 'the bounds on distances contradict each other' };
   const pairs = pairBounds(bounds);
   const heavy: number[] = [];
   for (let i = 0; i < n; i++) if (full.elements[i] !== 1) heavy.push(i);
@@ -71,15 +92,42 @@ export function repairPose(molecule: Molecule, wanted: readonly StereoUnit[], ta
       // A small push lets a centre leave the plane it has to pass.
       for (let i = 0; i < x.length; i++) x[i]! += 0.1 * (trial + 1) * (random() - 0.5);
       const restraint: PlaceRestraint = { atoms: heavy, places, force: hold, free: 0.1 };
-      const turnOver = refinementError(pairs, volumes, flat.flatAtoms, { volume: 2, fourth: 0, flat: 0.02 }, 3);
-      const settle = refinementError(pairs, volumes, flat.flatAtoms, { volume: 0.5, fourth: 0, flat: 0.1 }, 3);
-      minimise((at, g) => turnOver(at, g) + placeEnergy(restraint, at, g), x, { iterations: 400, gradient: 1e-3, step: 0.3 });
-      minimise((at, g) => 5 * settleScaled(settle, at, g) + placeEnergy({ ...restraint, force: 0.1 * hold }, at, g), x, {
+      const turnOver = refinementError(
+        pairs,
+        volumes,
+        flat.flatAtoms,
+        { volume: 2, fourth: 0, flat: 0.02 },
+        3,
+      );
+      const settle = refinementError(
+        pairs,
+        volumes,
+        flat.flatAtoms,
+        { volume: 0.5, fourth: 0, flat: 0.1 },
+        3,
+      );
+      minimise((at, g) => turnOver(at, g) + placeEnergy(restraint, at, g), x, {
         iterations: 400,
         gradient: 1e-3,
-        step: 0.2,
+        step: 0.3,
       });
-      if (building.field) relax(building.field, x, (at, g) => placeEnergy({ ...restraint, force: 20 * hold }, at, g), 600, 0.05);
+      minimise(
+        (at, g) => 5 * settleScaled(settle, at, g) + placeEnergy({ ...restraint, force: 0.1 * hold }, at, g),
+        x,
+        {
+          iterations: 400,
+          gradient: 1e-3,
+          step: 0.2,
+        },
+      );
+      if (building.field)
+        relax(
+          building.field,
+          x,
+          (at, g) => placeEnergy({ ...restraint, force: 20 * hold }, at, g),
+          600,
+          0.05,
+        );
       const model: Molecule = { ...full, coordinates: x, stated: [] };
       const wrong = wrongUnits(volumes, x, 3, LEAST_SHARE);
       const missed = unitsMissed(model, asked);

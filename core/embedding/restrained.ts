@@ -42,6 +42,11 @@ export function relax(
   iterations = 1500,
   gradient = 0.02,
 ): number {
-  minimise((at, g) => field.energy(at, g) + (extra ? extra(at, g) : 0), x, { iterations, gradient, step: 0.3, stall: 1e-6 });
+  minimise((at, g) => field.energy(at, g) + (extra ? extra(at, g) : 0), x, {
+    iterations,
+    gradient,
+    step: 0.3,
+    stall: 1e-6,
+  });
   return field.energy(x, new Float64Array(x.length));
 }

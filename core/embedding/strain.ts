@@ -55,7 +55,11 @@ export function poseStrain(
   for (const i of heavy) {
     movement = Math.max(
       movement,
-      Math.hypot(relaxed[3 * i]! - x[3 * i]!, relaxed[3 * i + 1]! - x[3 * i + 1]!, relaxed[3 * i + 2]! - x[3 * i + 2]!),
+      Math.hypot(
+        relaxed[3 * i]! - x[3 * i]!,
+        relaxed[3 * i + 1]! - x[3 * i + 1]!,
+        relaxed[3 * i + 2]! - x[3 * i + 2]!,
+      ),
     );
   }
   let best = relax(field, relaxed.slice(), null);
@@ -98,9 +102,17 @@ function readyPose(
   if (full.atomCount > molecule.atomCount) {
     const listed = Array.from({ length: molecule.atomCount }, (_, i) => i);
     // Only the added hydrogens move.
-    relax(field, x, (at, g) => placeEnergy({ atoms: listed, places: full.coordinates!, force: 1e4, free: 0 }, at, g), 300, 0.1);
+    relax(
+      field,
+      x,
+      (at, g) => placeEnergy({ atoms: listed, places: full.coordinates!, force: 1e4, free: 0 }, at, g),
+      300,
+      0.1,
+    );
     x.set(molecule.coordinates);
-    warnings.push(`${full.atomCount - molecule.atomCount} hydrogens were not in the file; they were placed and relaxed`);
+    warnings.push(
+      `${full.atomCount - molecule.atomCount} hydrogens were not in the file; they were placed and relaxed`,
+    );
   }
   return { full, field, x, warnings };
 }

@@ -5,5 +5,11 @@ export interface TorsionLibrary {
 }
 
 export function parseTorsionLibrary(text: (name: string) => string): TorsionLibrary {
-  return { ids: new Map(text('cod/torsionID.txt').split(/\r?\n/u).map((id, i) => [id, i])) };
+  return {
+    ids: new Map(
+      text('cod/torsionID.txt')
+        .split(/\r?\n/u)
+        .map((id, i) => [id, i]),
+    ),
+  };
 }

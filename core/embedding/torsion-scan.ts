@@ -48,9 +48,14 @@ export function scanTorsion(
   molecule: Molecule,
   tables: EmbeddingTables,
   atoms: readonly [number, number, number, number],
-  options: { readonly step?: number; readonly signal?: AbortSignal; readonly progress?: (done: number, all: number) => void } = {},
+  options: {
+    readonly step?: number;
+    readonly signal?: AbortSignal;
+    readonly progress?: (done: number, all: number) => void;
+  } = {},
 ): TorsionScan | null {
-  if (molecule.dimension !== 3 || !molecule.coordinates) throw new RangeError('a scan needs coordinates in space');
+  if (molecule.dimension !== 3 || !molecule.coordinates)
+    throw new RangeError('a scan needs coordinates in space');
   const full = addHydrogens(molecule);
   const field = new Mmff94(full, tables.mmff94);
   const step = options.step ?? 10;
@@ -69,7 +74,13 @@ export function scanTorsion(
       const slot = (((origin + way * s) % count) + count) % count;
       const target = slot * step;
       if (movable) turn(x, j, k, movable, target - torsion(x, i, j, k, l));
-      const energy = relax(field, x, (at, g) => torsionRestraint(at, g, atoms, (target * Math.PI) / 180), 400, 0.05);
+      const energy = relax(
+        field,
+        x,
+        (at, g) => torsionRestraint(at, g, atoms, (target * Math.PI) / 180),
+        400,
+        0.05,
+      );
       if (energy < energies[slot]!) energies[slot] = energy;
       options.progress?.(++done, 2 * (count + 1));
     }

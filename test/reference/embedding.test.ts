@@ -77,7 +77,9 @@ describe.skipIf(chembl === null)(`drug-like molecules${chembl ? '' : ` (${SHARED
   });
 
   it('agrees with the energy that openchemlib gives for our coordinates', () => {
-    openchemlib.Resources.registerFromNodejs(new URL('../../node_modules/openchemlib/dist/resources.json', import.meta.url).pathname);
+    openchemlib.Resources.registerFromNodejs(
+      new URL('../../node_modules/openchemlib/dist/resources.json', import.meta.url).pathname,
+    );
     const off: unknown[] = [];
     let compared = 0;
     // Of a salt our energy is the sum over its parts, which openchemlib's is not.
@@ -112,7 +114,11 @@ function thickness(molecule: Molecule): number {
     if (i === j || j === k || i === k) continue;
     const u = [0, 1, 2].map(c => x[3 * j + c]! - x[3 * i + c]!);
     const v = [0, 1, 2].map(c => x[3 * k + c]! - x[3 * i + c]!);
-    const normal = [u[1]! * v[2]! - u[2]! * v[1]!, u[2]! * v[0]! - u[0]! * v[2]!, u[0]! * v[1]! - u[1]! * v[0]!];
+    const normal = [
+      u[1]! * v[2]! - u[2]! * v[1]!,
+      u[2]! * v[0]! - u[0]! * v[2]!,
+      u[0]! * v[1]! - u[1]! * v[0]!,
+    ];
     const norm = Math.hypot(normal[0]!, normal[1]!, normal[2]!);
     if (norm < 1) continue;
     let most = 0;
@@ -133,7 +139,10 @@ describe.skipIf(suite === null)(`CIP suite${suite ? '' : ` (${SHARED_DATA_ABSENT
         .map(({ descriptor, unit }) => `${unit.atoms.map(atom => atom + 1).join('-')}${descriptor}`)
         .sort()
         .join(' ');
-    const stated = (molecule: Molecule): string[] => labels(molecule).split(' ').filter(label => label !== '');
+    const stated = (molecule: Molecule): string[] =>
+      labels(molecule)
+        .split(' ')
+        .filter(label => label !== '');
     const lost: unknown[] = [];
     const refused: unknown[] = [];
     for (const [smiles, id] of lines(suite!)) {

@@ -49,7 +49,8 @@ export function angleTerms(
         const k = neighbours[b]!;
         const ring = smallRing(molecule, i, j, k);
         const delocalised = bondTypes[neighbourBonds[a]!]! + bondTypes[neighbourBonds[b]!]!;
-        const type = ring === 3 ? [3, 5, 6][delocalised]! : ring === 4 ? [4, 7, 8][delocalised]! : delocalised;
+        const type =
+          ring === 3 ? [3, 5, 6][delocalised]! : ring === 4 ? [4, 7, 8][delocalised]! : delocalised;
         const centre = parameters.properties[typing.types[j]!];
         let row = lookUp(parameters, type, typing.types[i]!, typing.types[j]!, typing.types[k]!);
         if (!row || row[0] === 0) {
@@ -86,7 +87,13 @@ function smallRing(molecule: Molecule, i: number, j: number, k: number): 0 | 3 |
 }
 
 /** Step-down of the outer atoms from their own type to any type; the centre keeps its type. */
-function lookUp(parameters: Mmff94Parameters, type: number, i: number, j: number, k: number): readonly number[] | undefined {
+function lookUp(
+  parameters: Mmff94Parameters,
+  type: number,
+  i: number,
+  j: number,
+  k: number,
+): readonly number[] | undefined {
   const ei = parameters.equivalents[i]!;
   const ej = parameters.equivalents[j]!;
   const ek = parameters.equivalents[k]!;
@@ -114,7 +121,8 @@ function defaultAngle(parameters: Mmff94Parameters, type: number, ring: 0 | 3 | 
     if (centre.element > 10) return 95;
     if (centre.linear) return 180;
   }
-  if (centre.coordination === 3 && centre.valence === 3 && centre.multiple === 0) return centre.element === 7 ? 107 : 92;
+  if (centre.coordination === 3 && centre.valence === 3 && centre.multiple === 0)
+    return centre.element === 7 ? 107 : 92;
   return 120;
 }
 

@@ -36,7 +36,8 @@ export function aromaticity(molecule: Molecule): Aromaticity {
         continue;
       }
       rings.push({ atoms, lonePairAtom });
-      for (let i = 0; i < atoms.length; i++) bonds[bondBetween(molecule, atoms[i]!, atoms[(i + 1) % atoms.length]!)] = 1;
+      for (let i = 0; i < atoms.length; i++)
+        bonds[bondBetween(molecule, atoms[i]!, atoms[(i + 1) % atoms.length]!)] = 1;
       found = true;
     }
     waiting = rest;
@@ -61,7 +62,8 @@ function judge(molecule: Molecule, atoms: readonly number[], aromaticBond: Uint8
     }
     if (double >= 0) {
       const partner = molecule.neighbours[double]!;
-      if (partner === before || partner === after || aromaticBond[molecule.neighbourBonds[double]!] === 1) electrons++;
+      if (partner === before || partner === after || aromaticBond[molecule.neighbourBonds[double]!] === 1)
+        electrons++;
       else return null;
     } else if (lonePairAtom === -1 && atoms.length === 5 && givesLonePair(molecule, atom)) {
       lonePairAtom = atom;

@@ -29,7 +29,8 @@ export function bondTypesOf(molecule: Molecule, typing: Typing, parameters: Mmff
     const first = parameters.properties[typing.types[molecule.bondAtoms[2 * b]!]!];
     const second = parameters.properties[typing.types[molecule.bondAtoms[2 * b + 1]!]!];
     if (!first || !second) continue;
-    if ((first.singleBetweenMultiple && second.singleBetweenMultiple) || (first.aromatic && second.aromatic)) result[b] = 1;
+    if ((first.singleBetweenMultiple && second.singleBetweenMultiple) || (first.aromatic && second.aromatic))
+      result[b] = 1;
   }
   return result;
 }
@@ -49,7 +50,8 @@ export function bondTerms(
     const j = molecule.bondAtoms[2 * b + 1]!;
     const low = Math.min(typing.types[i]!, typing.types[j]!);
     const high = Math.max(typing.types[i]!, typing.types[j]!);
-    const row = parameters.bonds.get(key(bondTypes[b]!, low, high)) ?? empiricalBond(molecule, typing, b, parameters);
+    const row =
+      parameters.bonds.get(key(bondTypes[b]!, low, high)) ?? empiricalBond(molecule, typing, b, parameters);
     force[b] = row[0]!;
     length[b] = row[1]!;
   }
@@ -57,7 +59,12 @@ export function bondTerms(
 }
 
 /** Schomaker and Stevenson's length with the corrections of 1996, 17, 616; force constant from the tabulated bond of the same elements, else Herschbach and Laurie. */
-function empiricalBond(molecule: Molecule, typing: Typing, bond: number, parameters: Mmff94Parameters): number[] {
+function empiricalBond(
+  molecule: Molecule,
+  typing: Typing,
+  bond: number,
+  parameters: Mmff94Parameters,
+): number[] {
   const i = molecule.bondAtoms[2 * bond]!;
   const j = molecule.bondAtoms[2 * bond + 1]!;
   const zi = molecule.elements[i]!;
@@ -89,13 +96,15 @@ function empiricalBond(molecule: Molecule, typing: Typing, bond: number, paramet
     }
   };
   const contraction = zi === 1 || zj === 1 ? 0.05 : 0.085;
-  const r0 = ri - shrink(zi, pi.multiple) + (rj - shrink(zj, pj.multiple)) - contraction * Math.abs(xi - xj) ** 1.4;
+  const r0 =
+    ri - shrink(zi, pi.multiple) + (rj - shrink(zj, pj.multiple)) - contraction * Math.abs(xi - xj) ** 1.4;
   const reference = parameters.bondDefaults.get(key(Math.min(zi, zj), Math.max(zi, zj), 0));
   if (reference) return [reference[1]! * (reference[0]! / r0) ** 6, r0];
   const low = Math.min(rowOf(zi, true), rowOf(zj, true));
   const high = Math.max(rowOf(zi, true), rowOf(zj, true));
   const [a, d] = parameters.herschbachLaurie.get(key(low, high, 0)) ?? [];
-  if (a === undefined || d === undefined) throw new Error(`bond ${bond + 1}: MMFF94 has no rule for its elements`);
+  if (a === undefined || d === undefined)
+    throw new Error(`bond ${bond + 1}: MMFF94 has no rule for its elements`);
   return [10 ** (-(r0 - a) / d), r0];
 }
 

@@ -44,7 +44,14 @@ export class Mmff94 {
     this.charges = partialCharges(molecule, this.typing, bondTypes, parameters);
     this.bonds = bondTerms(molecule, this.typing, bondTypes, parameters);
     this.angles = angleTerms(molecule, this.typing, bondTypes, this.bonds, parameters);
-    this.stretchBends = stretchBendTerms(molecule, this.typing, bondTypes, this.bonds, this.angles, parameters);
+    this.stretchBends = stretchBendTerms(
+      molecule,
+      this.typing,
+      bondTypes,
+      this.bonds,
+      this.angles,
+      parameters,
+    );
     this.outOfPlanes = outOfPlaneTerms(molecule, this.typing, parameters);
     this.torsions = torsionTerms(molecule, this.typing, bondTypes, parameters);
     this.pairs = pairTerms(molecule, this.typing, this.charges, parameters);

@@ -21,13 +21,21 @@ export interface OutOfPlaneTerms {
 const OUTER = [0, 2, 3, 4] as const;
 
 /** Three Wilson angles for each centre whose constant is not zero. */
-export function outOfPlaneTerms(molecule: Molecule, typing: Typing, parameters: Mmff94Parameters): OutOfPlaneTerms {
+export function outOfPlaneTerms(
+  molecule: Molecule,
+  typing: Typing,
+  parameters: Mmff94Parameters,
+): OutOfPlaneTerms {
   const atoms: number[] = [];
   const force: number[] = [];
   const { neighbourStart, neighbours } = molecule;
   for (let j = 0; j < molecule.atomCount; j++) {
     if (neighbourStart[j + 1]! - neighbourStart[j]! !== 3) continue;
-    const [a, b, c] = neighbours.subarray(neighbourStart[j]!, neighbourStart[j + 1]!) as unknown as [number, number, number];
+    const [a, b, c] = neighbours.subarray(neighbourStart[j]!, neighbourStart[j + 1]!) as unknown as [
+      number,
+      number,
+      number,
+    ];
     let constant = 0;
     for (const column of OUTER) {
       const level = (atom: number): number => parameters.equivalents[typing.types[atom]!]![column]!;

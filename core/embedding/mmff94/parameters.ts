@@ -71,7 +71,8 @@ export function parseMmff94(text: (name: string) => string): Mmff94Parameters {
     const lines = text(`forcefield/mmff94/${name}.csv`).split(/\r?\n/u);
     const count = Number(lines[0]);
     const body = lines.slice(2).filter(line => line.trim() !== '');
-    if (!(count > 0) || body.length < count) throw new Error(`table ${name} of MMFF94: ${body.length} rows, ${lines[0]} announced`);
+    if (!(count > 0) || body.length < count)
+      throw new Error(`table ${name} of MMFF94: ${body.length} rows, ${lines[0]} announced`);
     return body.map(line => {
       const cells = line.split(',');
       return { values: cells.map(Number), last: cells.at(-1) ?? '' };
@@ -80,7 +81,8 @@ export function parseMmff94(text: (name: string) => string): Mmff94Parameters {
   const table = (name: string, keys: number): Map<number, Row> => {
     const map = new Map<number, Row>();
     for (const { values } of rows(name)) {
-      if (values.some(value => !Number.isFinite(value))) throw new Error(`table ${name} of MMFF94: a cell is not a number`);
+      if (values.some(value => !Number.isFinite(value)))
+        throw new Error(`table ${name} of MMFF94: a cell is not a number`);
       const k = values.slice(0, keys);
       map.set(key(k[0]!, k[1] ?? 0, k[2] ?? 0, k[3] ?? 0, k[4] ?? 0), values.slice(keys));
     }
@@ -88,7 +90,17 @@ export function parseMmff94(text: (name: string) => string): Mmff94Parameters {
   };
   const properties: (TypeProperties | undefined)[] = [];
   for (const { values } of rows('atom')) {
-    const [type, element, coordination, valence, pilp, mltb, arom, linh, sbmb] = values as [number, number, number, number, number, number, number, number, number];
+    const [type, element, coordination, valence, pilp, mltb, arom, linh, sbmb] = values as [
+      number,
+      number,
+      number,
+      number,
+      number,
+      number,
+      number,
+      number,
+      number,
+    ];
     properties[type] = {
       element,
       coordination,

@@ -27,14 +27,21 @@ export function torsionTerms(
   for (let b = 0; b < molecule.bondCount; b++) {
     const j = bondAtoms[2 * b]!;
     const k = bondAtoms[2 * b + 1]!;
-    if (parameters.properties[typing.types[j]!]!.linear || parameters.properties[typing.types[k]!]!.linear) continue;
+    if (parameters.properties[typing.types[j]!]!.linear || parameters.properties[typing.types[k]!]!.linear)
+      continue;
     for (let p = neighbourStart[j]!; p < neighbourStart[j + 1]!; p++) {
       const i = neighbours[p]!;
       if (i === k) continue;
       for (let q = neighbourStart[k]!; q < neighbourStart[k + 1]!; q++) {
         const l = neighbours[q]!;
         if (l === j || l === i) continue;
-        const type = torsionType(molecule, typing, bondTypes, [i, j, k, l], [neighbourBonds[p]!, b, neighbourBonds[q]!]);
+        const type = torsionType(
+          molecule,
+          typing,
+          bondTypes,
+          [i, j, k, l],
+          [neighbourBonds[p]!, b, neighbourBonds[q]!],
+        );
         const row = lookUp(molecule, typing, parameters, type, [i, j, k, l], b);
         if (row[0] === 0 && row[1] === 0 && row[2] === 0) continue;
         atoms.push(i, j, k, l);
@@ -85,7 +92,13 @@ function inSaturatedFive(molecule: Molecule, typing: Typing, atoms: Four): boole
 }
 
 /** Columns of the equivalence table for i, l at each step; -1 is any type. */
-const STEPS = [[0, 0, 0], [1, 1, 1], [2, 1, -1], [-1, 1, 2], [-1, 1, -1]] as const;
+const STEPS = [
+  [0, 0, 0],
+  [1, 1, 1],
+  [2, 1, -1],
+  [-1, 1, 2],
+  [-1, 1, -1],
+] as const;
 
 function lookUp(
   molecule: Molecule,
@@ -102,7 +115,8 @@ function lookUp(
       const l = cl < 0 ? 0 : e[3]![cl]!;
       const j = e[1]![cj]!;
       const k = e[2]![cj]!;
-      const found = parameters.torsions.get(key(type, i, j, k, l)) ?? parameters.torsions.get(key(type, l, k, j, i));
+      const found =
+        parameters.torsions.get(key(type, i, j, k, l)) ?? parameters.torsions.get(key(type, l, k, j, i));
       if (found) return found;
     }
   }
@@ -195,7 +209,8 @@ export function torsionEnergy(terms: TorsionTerms, x: Float64Array, g: Float64Ar
     const gg = Math.max(Math.sqrt(gx * gx + gy * gy + gz * gz), 1e-8);
     const norm = 1 / Math.sqrt(aa * bb);
     const cosine = (ax * bx + ay * by + az * bz) * norm;
-    const sine = (((by * az - bz * ay) * gx + (bz * ax - bx * az) * gy + (bx * ay - by * ax) * gz) * norm) / gg;
+    const sine =
+      (((by * az - bz * ay) * gx + (bz * ax - bx * az) * gy + (bx * ay - by * ax) * gz) * norm) / gg;
     const v1 = constants[3 * t]!;
     const v2 = constants[3 * t + 1]!;
     const v3 = constants[3 * t + 2]!;

@@ -100,7 +100,8 @@ class Typer {
   private inRing3(atom: number): boolean {
     const list = this.neighbours(atom);
     for (let i = 0; i < list.length; i++) {
-      for (let j = i + 1; j < list.length; j++) if (bondBetween(this.molecule, list[i]!, list[j]!) >= 0) return true;
+      for (let j = i + 1; j < list.length; j++)
+        if (bondBetween(this.molecule, list[i]!, list[j]!) >= 0) return true;
     }
     return false;
   }
@@ -130,7 +131,10 @@ class Typer {
       // Imidazolium: the lone-pair nitrogen and a cationic one on both sides of one carbon.
       let between = -1;
       if (this.z(first) === 7) {
-        for (const [next, beta] of [[1, 2], [4, 3]] as const) {
+        for (const [next, beta] of [
+          [1, 2],
+          [4, 3],
+        ] as const) {
           if (this.z(member(next)) === 6 && this.isCationicNitrogen(member(beta))) between = member(next);
         }
       }
@@ -148,7 +152,12 @@ class Typer {
   }
 
   private isCationicNitrogen(atom: number): boolean {
-    return this.z(atom) === 7 && this.degree(atom) === 3 && this.orderSum(atom) === 4 && this.terminals(atom, 8) === 0;
+    return (
+      this.z(atom) === 7 &&
+      this.degree(atom) === 3 &&
+      this.orderSum(atom) === 4 &&
+      this.terminals(atom, 8) === 0
+    );
   }
 
   private fiveRing(atom: number, step: number, anion: boolean, between: number): number {
@@ -240,7 +249,13 @@ class Typer {
       case 3: {
         const cation = this.cationCentre(atom);
         if (cation > 0) return 57;
-        if (this.count(atom, 7, 2) + this.count(atom, 8, 2) + this.count(atom, 15, 2) + this.count(atom, 16, 2) > 0) {
+        if (
+          this.count(atom, 7, 2) +
+            this.count(atom, 8, 2) +
+            this.count(atom, 15, 2) +
+            this.count(atom, 16, 2) >
+          0
+        ) {
           const oxygens = this.terminals(atom, 8);
           const sulfurs = this.terminals(atom, 16);
           return oxygens === 2 || sulfurs === 2 ? 41 : 3;
@@ -348,7 +363,8 @@ class Typer {
     }
     for (const n of this.neighbours(atom)) {
       if (this.z(n) !== 6 || this.inAromatic(n)) continue;
-      if (this.count(n, 6, 2) + this.count(n, 7, 2) + this.count(n, 15, 2) + this.count(n, 6, 3) > 0) conjugated = true;
+      if (this.count(n, 6, 2) + this.count(n, 7, 2) + this.count(n, 15, 2) + this.count(n, 6, 3) > 0)
+        conjugated = true;
     }
     return conjugated ? 40 : triazene ? 10 : 8;
   }

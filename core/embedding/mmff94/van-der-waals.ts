@@ -11,7 +11,11 @@ const DONOR_RADIUS = 0.8;
 const DONOR_DEPTH = 0.5;
 
 /** R* in Å and ε in kcal/mol for two types. @throws Error when a type has no parameters. */
-export function pairParameters(parameters: Mmff94Parameters, first: number, second: number): readonly [number, number] {
+export function pairParameters(
+  parameters: Mmff94Parameters,
+  first: number,
+  second: number,
+): readonly [number, number] {
   const p = parameters.vanDerWaals[first];
   const q = parameters.vanDerWaals[second];
   if (!p || !q) throw new Error(`MMFF94 has no van der Waals parameters for type ${p ? second : first}`);
@@ -21,7 +25,8 @@ export function pairParameters(parameters: Mmff94Parameters, first: number, seco
   const donor = p.role === 'D' || q.role === 'D';
   let radius = 0.5 * (ri + rj) * (1 + (donor ? 0 : B * (1 - Math.exp(-BETA * gamma * gamma))));
   let depth =
-    (181.16 * p.g * q.g * p.alpha * q.alpha) / ((Math.sqrt(p.alpha / p.n) + Math.sqrt(q.alpha / q.n)) * radius ** 6);
+    (181.16 * p.g * q.g * p.alpha * q.alpha) /
+    ((Math.sqrt(p.alpha / p.n) + Math.sqrt(q.alpha / q.n)) * radius ** 6);
   if ((p.role === 'D' && q.role === 'A') || (p.role === 'A' && q.role === 'D')) {
     radius *= DONOR_RADIUS;
     depth *= DONOR_DEPTH;

@@ -104,7 +104,10 @@ describe('embed', () => {
   it('stops when cancelled', () => {
     const stop = new AbortController();
     stop.abort();
-    expect(embed(read('CCO'), tables, { signal: stop.signal })).toMatchObject({ ok: false, reason: 'cancelled' });
+    expect(embed(read('CCO'), tables, { signal: stop.signal })).toMatchObject({
+      ok: false,
+      reason: 'cancelled',
+    });
   });
 });
 
@@ -130,9 +133,9 @@ describe('geometry of built models', () => {
   ] as const;
 
   it('has bond lengths within 0.02 Å of published means in the median, and none off by 0.06 Å', () => {
-    const off = PUBLISHED.map(([, smiles, i, j, length]) => Math.abs(distance(built(smiles), i, j) - length)).sort(
-      (p, q) => p - q,
-    );
+    const off = PUBLISHED.map(([, smiles, i, j, length]) =>
+      Math.abs(distance(built(smiles), i, j) - length),
+    ).sort((p, q) => p - q);
     expect(off[off.length >> 1]).toBeLessThan(0.02);
     expect(off.at(-1)).toBeLessThan(0.06);
   });
@@ -149,7 +152,9 @@ describe('conformers', () => {
     for (let i = 0; i < energies.length; i++) {
       for (let j = 0; j < i; j++) {
         const [a, b] = [result.models[i]!, result.models[j]!];
-        expect(symmetricRmsd(symmetry, a.molecule.coordinates!, b.molecule.coordinates!)).toBeGreaterThanOrEqual(0.5);
+        expect(
+          symmetricRmsd(symmetry, a.molecule.coordinates!, b.molecule.coordinates!),
+        ).toBeGreaterThanOrEqual(0.5);
       }
     }
   });
@@ -248,7 +253,7 @@ describe('rotation about an axis', () => {
   it('sorts barriers as LaPlante et al. do and turns them into half-lives by Eyring', () => {
     expect([19.9, 20, 30, 30.1].map(laPlanteClass)).toEqual([1, 2, 2, 3]);
     // 24 kcal/mol at 310.15 K: k = 6.46e12 · exp(-38.94) s⁻¹, worked by hand.
-    expect(eyringHalfLife(24) / 3600).toBeCloseTo((Math.LN2 / (6.4625e12 * Math.exp(-38.9416))) / 3600, 1);
+    expect(eyringHalfLife(24) / 3600).toBeCloseTo(Math.LN2 / (6.4625e12 * Math.exp(-38.9416)) / 3600, 1);
   });
 });
 
