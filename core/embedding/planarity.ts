@@ -83,7 +83,7 @@ export function planarity(
   for (let i = 0; i < n; i++) {
     if (degree(molecule, i) !== 3) continue;
     if (!isFlat(molecule, field, i)) continue;
-    flat.push(i, ...neighbours.subarray(neighbourStart[i]!, neighbourStart[i + 1]!));
+    flat.push(i, ...neighbours.subarray(neighbourStart[i], neighbourStart[i + 1]));
   }
   return { planarBonds, cis, flatAtoms: Int32Array.from(flat) };
 }

@@ -53,7 +53,9 @@ export function readCxTail(tail: string, atomCount: number): CxTail {
       .map(label => label.replace(/&#(\d+);?/gu, (_, code: string) => String.fromCodePoint(Number(code))));
   }
   const fields = inner.replace(/\([^)]*\)/u, '').replace(/\$[^$]*\$/gu, '');
-  for (const match of fields.matchAll(/(?:^|,)(a|&\d+|o\d+|\^[1-7]|w[UD]?):(\d+(?:\.\d+)?(?:,\d+(?:\.\d+)?)*)/gu)) {
+  for (const match of fields.matchAll(
+    /(?:^|,)(a|&\d+|o\d+|\^[1-7]|w[UD]?):(\d+(?:\.\d+)?(?:,\d+(?:\.\d+)?)*)/gu,
+  )) {
     const [, key, list] = match as unknown as [string, string, string];
     if (key === 'a') groups.push({ kind: 'absolute', number: 0, atoms: atomList(list, key) });
     else if (key[0] === '&')

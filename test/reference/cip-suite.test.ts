@@ -30,7 +30,8 @@ function labelsOf(entry: Entry): string {
   return labels.map(([atom, letter]) => `${atom}${letter}`).join(' ');
 }
 
-const item = (entry: Entry, name: string): string => entry.data.find(data => data.name === name)?.value.trim() ?? '';
+const item = (entry: Entry, name: string): string =>
+  entry.data.find(data => data.name === name)?.value.trim() ?? '';
 
 /** Helices and biaryl axes cannot be written in SMILES. */
 const BEYOND_SMILES = new Set(['VS010', 'VS011', 'VS023', 'VS055', 'VS073', 'VS086', 'VS158']);

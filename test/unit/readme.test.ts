@@ -21,10 +21,14 @@ describe('the README', () => {
 
   it.each(examples)('shows what `deasil $command` prints', async ({ command, shown }) => {
     let out = '';
-    const io = { ...nodeIo(null, root), out: (chunk: string | Uint8Array) => {
-      out += typeof chunk === 'string' ? chunk : new TextDecoder().decode(chunk);
-      return Promise.resolve();
-    }, err: () => {} };
+    const io = {
+      ...nodeIo(null, root),
+      out: (chunk: string | Uint8Array) => {
+        out += typeof chunk === 'string' ? chunk : new TextDecoder().decode(chunk);
+        return Promise.resolve();
+      },
+      err: () => {},
+    };
     await runCommandLine(command.split(' '), io);
     expect(out).toBe(shown);
   });

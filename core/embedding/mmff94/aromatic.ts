@@ -86,8 +86,8 @@ function candidateRings(molecule: Molecule): number[][] {
   const { neighbourStart, neighbours, elements } = molecule;
   const flat = (atom: number): boolean => {
     const z = elements[atom]!;
-    if (z === 6) return neighbourStart[atom + 1]! - neighbourStart[atom]! === 3;
-    return z === 7 || z === 8 || z === 16 ? neighbourStart[atom + 1]! - neighbourStart[atom]! <= 3 : false;
+    const bonds = neighbourStart[atom + 1]! - neighbourStart[atom]!;
+    return z === 6 ? bonds === 3 : (z === 7 || z === 8 || z === 16) && bonds <= 3;
   };
   const path: number[] = [];
   const walk = (atom: number, first: number): void => {

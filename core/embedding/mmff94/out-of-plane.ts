@@ -31,7 +31,7 @@ export function outOfPlaneTerms(
   const { neighbourStart, neighbours } = molecule;
   for (let j = 0; j < molecule.atomCount; j++) {
     if (neighbourStart[j + 1]! - neighbourStart[j]! !== 3) continue;
-    const [a, b, c] = neighbours.subarray(neighbourStart[j]!, neighbourStart[j + 1]!) as unknown as [
+    const [a, b, c] = neighbours.subarray(neighbourStart[j], neighbourStart[j + 1]) as unknown as [
       number,
       number,
       number,
@@ -41,7 +41,7 @@ export function outOfPlaneTerms(
       const level = (atom: number): number => parameters.equivalents[typing.types[atom]!]![column]!;
       const outer = [level(a), level(b), level(c)].sort((p, q) => p - q);
       const centre = parameters.equivalents[typing.types[j]!]![1]!;
-      const found = parameters.outOfPlanes.get(key(outer[0]!, centre, outer[1]!, outer[2]!));
+      const found = parameters.outOfPlanes.get(key(outer[0]!, centre, outer[1]!, outer[2]));
       if (found) {
         constant = found[0]!;
         break;

@@ -68,7 +68,7 @@ class Typer {
 
   private neighbours(atom: number): Uint32Array {
     const { neighbours, neighbourStart } = this.molecule;
-    return neighbours.subarray(neighbourStart[atom]!, neighbourStart[atom + 1]!);
+    return neighbours.subarray(neighbourStart[atom], neighbourStart[atom + 1]);
   }
 
   private order(first: number, second: number): number {

@@ -473,7 +473,9 @@ describe('bad input: the code, the line of the file, and the other entries', () 
 
   it('a binary file', async () => {
     const bytes = Uint8Array.from({ length: 5000 }, (_, i) => (i * 7919) & 0xff);
-    await expect(entriesOf(bytes, 'poses.sdf')).rejects.toThrow(/poses\.sdf: (?:not a format|a binary file)/u);
+    await expect(entriesOf(bytes, 'poses.sdf')).rejects.toThrow(
+      /poses\.sdf: (?:not a format|a binary file)/u,
+    );
   });
 
   it('more atoms than the limit, and an entry without end', async () => {
