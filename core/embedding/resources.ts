@@ -1,11 +1,9 @@
-/** Loads the open parameter tables that embedding needs from the installed library (openchemlib): MMFF94 and the torsion statistics of crystal structures. */
+/** Loads the open parameter tables of MMFF94 that embedding needs, from the installed library (openchemlib). */
 import { type Mmff94Parameters, parseMmff94 } from './mmff94/parameters.ts';
-import { parseTorsionLibrary, type TorsionLibrary } from './torsion-library.ts';
 
 /** All tables that building and energies need; plain data, read only. */
 export interface EmbeddingTables {
   readonly mmff94: Mmff94Parameters;
-  readonly torsions: TorsionLibrary;
 }
 
 let loading: Promise<EmbeddingTables> | null = null;
@@ -19,7 +17,7 @@ export function loadTables(): Promise<EmbeddingTables> {
       if (found === undefined) throw new Error(`the installed openchemlib carries no table ${name}`);
       return found;
     };
-    return { mmff94: parseMmff94(text), torsions: parseTorsionLibrary(text) };
+    return { mmff94: parseMmff94(text) };
   });
   return loading;
 }
