@@ -50,7 +50,7 @@ const LIST = [
   ['drawing', 'Show or hide the drawing', 'View', 'w'],
   ['hydrogens', 'Show or hide hydrogens away from the unit', 'View', 'h'],
   ['overlay', 'Lay the intended arrangement over the unit, or lift it', 'View', 'i'],
-  ['ribbon', 'Show or hide the course of the chain', 'View', 'c'],
+  ['ribbon', 'Show or hide the trace of the chain', 'View', 'c'],
   ['labels', 'Show or hide atom labels', 'View', 'b'],
   ['theme', 'Switch between light and dark', 'View', null],
   ['motion', 'Switch movement on or off', 'View', null],

@@ -39,7 +39,7 @@ export interface Preferences {
   readonly singleKeys: boolean;
   readonly hydrogens: boolean;
   readonly labels: boolean;
-  /** In a macromolecule: the course of the chain under the sight. */
+  /** In a macromolecule: the trace of the chain under the sight. */
   readonly ribbon: boolean;
   /** The intended arrangement laid over the unit, where the intention has coordinates. */
   readonly overlay: boolean;

@@ -1,4 +1,4 @@
-/** What stands around a unit in a macromolecule, drawn by 3dmol under the sight with the same camera: the course of the chain. */
+/** What stands around a unit in a macromolecule, drawn by 3dmol under the sight with the same camera: the trace of the chain. */
 import type { Quaternion, Vector3 } from 'three';
 import { DARK, LIGHT } from '../sight/colours.ts';
 
