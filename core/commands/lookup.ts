@@ -42,30 +42,6 @@ function namesOf(molecule: Molecule, atom: number): string[] {
   return all;
 }
 
-/** Two atoms joined by a hyphen, in the order given (0-based). @throws UsageError when there are no two such atoms, or several. */
-export function findPair(molecule: Molecule, wanted: string, option: string): readonly [number, number] {
-  const pairs: (readonly [number, number])[] = [];
-  for (let hyphen = wanted.indexOf('-'); hyphen >= 0; hyphen = wanted.indexOf('-', hyphen + 1)) {
-    const first = atomsNamed(molecule, wanted.slice(0, hyphen));
-    const second = atomsNamed(molecule, wanted.slice(hyphen + 1));
-    for (const a of first) for (const b of second) if (a !== b) pairs.push([a, b]);
-  }
-  const [only, ...more] = pairs;
-  if (only === undefined) {
-    throw new UsageError(`${option} ${wanted}: two atoms joined by a hyphen are wanted (C2-C3)`);
-  }
-  if (more.length > 0)
-    throw new UsageError(`${option} ${wanted}: several atoms have these names; give numbers`);
-  return only;
-}
-
-/** Atoms of a name; the file's own labels come before numbers. */
-function atomsNamed(molecule: Molecule, wanted: string): number[] {
-  const all = Array.from({ length: molecule.atomCount }, (_, atom) => atom);
-  const labelled = all.filter(atom => labelOf(molecule, atom) === wanted);
-  return labelled.length > 0 ? labelled : all.filter(atom => namesOf(molecule, atom).includes(wanted));
-}
-
 /** Index in the docket of the unit named by an atom of it, or by two. @throws UsageError that lists the units there are. */
 export function findUnit(molecule: Molecule, docket: Docket, wanted: string): number {
   const names = (atom: number): string[] => namesOf(molecule, atom);
